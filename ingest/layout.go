@@ -1,0 +1,180 @@
+package ingest
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+
+	"strandwise/channels"
+	"strandwise/channels/group"
+	"strandwise/ingest/fault"
+	"strandwise/ingest/raw"
+)
+
+// frame is what all takes of a run share, fixed by the first of them.
+type frame struct {
+	layout *channels.Layout
+	file   string          // that fixed it
+	rules  []channels.Unit // unit the rules give each channel; no symbol for none
+	stated []bool          // the first file states a unit
+}
+
+// fixFrame makes the layout of a run from the first file.
+func fixFrame(first *raw.Layout, file string, o *Options) (*frame, error) {
+	list := make([]channels.Channel, len(first.Columns))
+	f := &frame{file: file, stated: make([]bool, len(list))}
+	for i, c := range first.Columns {
+		list[i] = c.Channel
+	}
+	var err error
+	if f.rules, err = applyRules(list, o.Units); err != nil {
+		return nil, err
+	}
+	for i, c := range first.Columns {
+		f.stated[i] = c.Unit != ""
+		if list[i], _, err = f.convert(c.Channel, i, c.Unit, file); err != nil {
+			return nil, err
+		}
+	}
+	f.layout, err = grouped(list, o.Groups)
+	return f, err
+}
+
+// applyRules finds the unit the rules give each channel; the last rule holds.
+func applyRules(list []channels.Channel, rules []UnitRule) ([]channels.Unit, error) {
+	out := make([]channels.Unit, len(list))
+	for _, r := range rules {
+		found, err := group.Match(list, r.Pattern)
+		if err != nil {
+			return nil, &UsageError{Key: "unit", Problem: fmt.Sprintf("unit %s", r.Unit.Symbol), Err: err}
+		}
+		for _, c := range found {
+			if _, _, err := list[c].In(r.Unit); err != nil {
+				return nil, &UsageError{Key: "unit", Problem: fmt.Sprintf("unit %s for %q", r.Unit.Symbol, r.Pattern), Err: err}
+			}
+			out[c] = r.Unit
+		}
+	}
+	return out, nil
+}
+
+func grouped(list []channels.Channel, rules []group.Rule) (*channels.Layout, error) {
+	layout := &channels.Layout{Channels: list}
+	if len(rules) == 0 {
+		return layout.WithGroups(group.FromNames(list))
+	}
+	groups, err := group.FromRules(list, rules)
+	if err == nil {
+		layout, err = layout.WithGroups(groups)
+	}
+	if err != nil {
+		return nil, &UsageError{Key: "group", Problem: "channel groups", Err: err}
+	}
+	return layout, nil
+}
+
+// convert returns the channel at position i as it is held, and the factor that
+// turns the values a file states in this unit into it.
+func (f *frame) convert(c channels.Channel, i int, stated, file string) (channels.Channel, float64, error) {
+	unit := f.rules[i]
+	switch {
+	case unit.Symbol != "":
+	case stated == "" || stated == c.Unit:
+		return c, 1, nil
+	default:
+		var err error
+		if unit, err = channels.ParseUnit(stated); err != nil {
+			return c, 0, &fault.Error{File: file, Channel: c.Name, Problem: err.Error(), Remedy: "correct the header, or state the unit with --unit"}
+		}
+	}
+	held, factor, err := c.In(unit)
+	if err != nil {
+		return c, 0, &fault.Error{File: file, Problem: err.Error(), Remedy: "correct the header, or state the unit with --unit"}
+	}
+	return held, factor, nil
+}
+
+// unstated lists the channels of known quantity for which neither the file nor
+// a rule states a unit: they are taken to be in the unit they are held in.
+func (f *frame) unstated() []string {
+	var out []string
+	for i, c := range f.layout.Channels {
+		if c.Unit != "" && c.Unit != "1" && !f.stated[i] && f.rules[i].Symbol == "" {
+			out = append(out, c.Name)
+		}
+	}
+	return out
+}
+
+// fit is how the columns of one file become the channels of the run.
+type fit struct {
+	from    []int     // channel i is column from[i]
+	factor  []float64 // and is multiplied by factor[i]
+	plain   bool      // every channel is its own column, unchanged
+	scratch []float64 // one frame
+}
+
+// fit matches the columns of a file with the channels by name, in any order.
+func (f *frame) fit(l *raw.Layout, file string) (*fit, error) {
+	n := len(f.layout.Channels)
+	out := &fit{from: make([]int, n), factor: make([]float64, n), plain: true, scratch: make([]float64, n)}
+	for i, c := range f.layout.Channels {
+		at := slices.IndexFunc(l.Columns, func(x raw.Column) bool { return x.Channel.Name == c.Name })
+		if at < 0 {
+			return nil, f.mismatch(file, c.Name, "is missing; "+f.file+" has it")
+		}
+		stated := l.Columns[at].Unit
+		if (stated != "") != f.stated[i] && f.rules[i].Symbol == "" {
+			return nil, f.unitMismatch(file, c.Name, stated)
+		}
+		_, factor, err := f.convert(c, i, stated, file)
+		if err != nil {
+			return nil, err
+		}
+		out.from[i], out.factor[i] = at, factor
+		out.plain = out.plain && at == i && factor == 1
+	}
+	if len(l.Columns) > n {
+		for _, x := range l.Columns {
+			if f.layout.Index(x.Channel.Name) < 0 {
+				return nil, f.mismatch(file, x.Channel.Name, "is extra; "+f.file+" does not have it")
+			}
+		}
+	}
+	return out, nil
+}
+
+func (f *frame) mismatch(file, channel, problem string) error {
+	return &fault.Error{File: file, Channel: channel, Problem: problem, Remedy: "give all recordings the same channels, or read them apart"}
+}
+
+func (f *frame) unitMismatch(file, channel, stated string) error {
+	problem := fmt.Sprintf("states the unit %s, but %s states none", stated, f.file)
+	if stated == "" {
+		problem = fmt.Sprintf("states no unit, but %s does", f.file)
+	}
+	return &fault.Error{File: file, Channel: channel, Problem: problem, Remedy: "state the unit in every header, or with --unit"}
+}
+
+// apply reorders and converts the values of a take in place.
+func (t *fit) apply(data []float64) {
+	if t.plain {
+		return
+	}
+	n := len(t.from)
+	for ; len(data) >= n && n > 0; data = data[n:] {
+		copy(t.scratch, data)
+		for i, from := range t.from {
+			data[i] = t.scratch[from] * t.factor[i]
+		}
+	}
+}
+
+// abbreviate joins names, leaving out most of a long list.
+func abbreviate(names []string) string {
+	const most = 6
+	if len(names) <= most {
+		return strings.Join(names, ", ")
+	}
+	return fmt.Sprintf("%s and %d more", strings.Join(names[:most], ", "), len(names)-most)
+}

@@ -1,0 +1,134 @@
+package ingest
+
+import (
+	"errors"
+	"fmt"
+
+	"strandwise/channels"
+	"strandwise/ingest/fault"
+	"strandwise/ingest/raw"
+)
+
+var errStopped = errors.New("receiver stopped")
+
+// pass is one reading of all files.
+type pass struct {
+	r       *Recordings
+	seen    register
+	files   map[int]known
+	beside  map[string]File
+	notices notices
+	yield   func(*channels.Take, error) bool
+}
+
+func (p *pass) run() error {
+	for i := range p.r.sources {
+		s, err := p.r.spooled(i)
+		if err != nil {
+			return err
+		}
+		var before *known
+		if k, ok := p.r.files[i]; ok {
+			before = &k
+		}
+		f, err := openFile(s, before)
+		if err != nil {
+			return err
+		}
+		err = p.file(f, i)
+		f.close()
+		if err != nil {
+			return err
+		}
+	}
+	if len(p.seen) == 0 {
+		return &fault.Error{File: p.r.sources[0].name, Problem: "holds no takes", Remedy: "name the recordings themselves"}
+	}
+	return nil
+}
+
+func (p *pass) file(f *file, index int) error {
+	in := raw.Input{
+		Name: f.name, Path: f.path, Columns: p.r.options.Columns, TimeUnit: p.r.options.TimeUnit,
+		Notice: func(text, evidence string) { p.notices.add(f.name, text, evidence) },
+		Beside: func(name string) ([]byte, error) {
+			b, file, err := readBeside(f.source, name)
+			if err == nil {
+				p.beside[file.Path] = file
+			}
+			return b, err
+		},
+	}
+	var fitted *fit
+	var fittedTo *raw.Layout
+	for t, err := range f.takes(in) {
+		if err != nil {
+			return err
+		}
+		if t.Layout != fittedTo {
+			if fitted, err = p.fit(t.Layout, f.name); err != nil {
+				return err
+			}
+			fittedTo = t.Layout
+		}
+		if err := p.take(t, f.source, index, fitted); err != nil {
+			return err
+		}
+	}
+	done, err := f.finish()
+	p.files[index] = done
+	return err
+}
+
+// fit matches the layout of a file with the one of the run, which the first
+// file fixes.
+func (p *pass) fit(l *raw.Layout, file string) (*fit, error) {
+	if p.r.frame == nil {
+		f, err := fixFrame(l, file, &p.r.options)
+		if err != nil {
+			return nil, err
+		}
+		p.r.frame = f
+	}
+	if names := p.r.frame.unstated(); len(names) > 0 {
+		p.notices.add(p.r.frame.file, "no unit is stated for "+abbreviate(names)+"; the values are taken to be in SI units", "")
+	}
+	return p.r.frame.fit(l, file)
+}
+
+func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
+	out := &channels.Take{Layout: p.r.frame.layout, Time: t.Time, Data: t.Data}
+	if err := identify(out, t, s, p.r.options.Label); err != nil {
+		return err
+	}
+	if earlier, again := p.seen.enter(out.ID, index, t.Line); again {
+		return repeated(out.ID, p.r.sources[earlier.file], int(earlier.line), s, t.Line)
+	}
+	if err := p.clock(t, s); err != nil {
+		return err
+	}
+	fitted.apply(t.Data)
+	if err := out.Validate(); err != nil {
+		return &fault.Error{File: s.name, Line: t.Line, Problem: err.Error(), Remedy: "leave the take out or record it again"}
+	}
+	if !p.yield(out, nil) {
+		return errStopped
+	}
+	return nil
+}
+
+// clock turns frame numbers into seconds.
+func (p *pass) clock(t *raw.Take, s source) error {
+	rate := p.r.options.Rate
+	switch {
+	case t.Clock == raw.Seconds && rate > 0:
+		p.notices.add(s.name, "has a time column, so the frame rate stated is not used", "")
+	case t.Clock == raw.Frames && rate == 0:
+		return &UsageError{Key: "rate", Problem: fmt.Sprintf("no time column in %s: state the frame rate with --rate", s.name)}
+	case t.Clock == raw.Frames:
+		for i := range t.Time {
+			t.Time[i] /= rate
+		}
+	}
+	return nil
+}

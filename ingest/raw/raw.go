@@ -1,0 +1,134 @@
+// Package raw is the contract between ingest and the packages that each read
+// one format of recordings.
+//
+// A format turns bytes into raw takes: numbers in the units and the channel
+// order of the file, with as much identity as the file itself states. All that
+// is alike for every format happens behind it, in ingest: unpacking, identity
+// from the path, units, groups, one layout for all files, uniqueness of takes
+// and validation. So a new format is one small package with one [Format].
+package raw
+
+import (
+	"io"
+	"iter"
+
+	"strandwise/channels"
+)
+
+// Format reads one kind of file.
+type Format interface {
+	// Extensions lists the file name extensions, with dot and in lower case,
+	// by which a file met in a folder is taken for a recording of this format.
+	Extensions() []string
+
+	// Sniff tells whether a file that begins with head is of this format. The
+	// head is unpacked, and shorter than [SniffSize] only when the file is.
+	Sniff(head []byte, name string) bool
+
+	// Read yields the takes of one file in its order. Errors come as in
+	// [channels.Stream], as a *fault.Error wherever the file is at fault;
+	// errors of r are faults already and are passed on as they are. A format
+	// that needs more than one sequential read opens in.Path itself. A file
+	// that only belongs to another one, such as a sidecar, yields nothing.
+	Read(r io.Reader, in Input) Stream
+}
+
+// SniffSize is how many bytes of a file [Format.Sniff] is shown.
+const SniffSize = 4096
+
+// Input says what is being read, and how the user wants it read.
+type Input struct {
+	Name     string   // file as the user named it, for messages
+	Path     string   // file on disk
+	Columns  []string // names of the columns of a table without a header
+	TimeUnit string   // unit of a time column that does not state its own: s, ms, us, ns, or empty
+
+	// Beside returns the whole of a small file that stands in the folder of
+	// this one and belongs to it. The error is a fault; errors.Is finds
+	// fs.ErrNotExist in it when there is no such file.
+	Beside func(name string) ([]byte, error)
+
+	// Notice tells the user something about this file. The same text is told
+	// once for all files; the evidence, which may be empty, is that of the
+	// first of them.
+	Notice func(text, evidence string)
+}
+
+// Stream is a sequence of raw takes, under the contract of [channels.Stream].
+type Stream = iter.Seq2[*Take, error]
+
+// Take is one take as a file states it.
+type Take struct {
+	Identity
+	Line   int     // 1-based line the take begins at, 0 in a binary file
+	Layout *Layout // shared by the takes of one file
+	Clock  Clock   // what Time counts
+	Time   []float64
+	Data   []float64 // frames × channels, frame-major, as recorded; NaN where Missing says so
+
+	Missing     []Missing    // values the file leaves out, by frame and then column
+	Annotations []Annotation // what the file says happened when, by start
+}
+
+// Missing is one value a file leaves out: an empty field, a marker not seen.
+type Missing struct {
+	Frame, Column int
+	Line          int // 1-based line of a text file, else 0
+}
+
+// Annotation is a stretch of a recording that the recording itself, or a file
+// beside it, names.
+type Annotation struct {
+	Start, End float64 // on the clock of the take; equal for an instant
+	Label      string
+	Subject    string // empty unless stated
+	Line       int    // of the file that states it, else 0
+}
+
+// Identity is what a file or its path states about a take. What it does not
+// state is empty.
+type Identity struct {
+	Take    string // name of the take within the file
+	Label   string
+	Subject string
+	Session string
+	Split   string
+}
+
+// Layout is the channels of one file, in its own order.
+type Layout struct {
+	Columns []Column
+}
+
+// Column is one channel as a file holds it.
+type Column struct {
+	Channel channels.Channel
+	Unit    string // as the file states it, empty when it states none
+}
+
+// Clock says what the times of a take count.
+type Clock int
+
+// The clocks.
+const (
+	Seconds Clock = iota // time in seconds
+	Frames               // frame numbers, which a rate turns into seconds
+)
+
+// Field returns the field of this lower-case name: take, label, subject,
+// session or split. It returns nil for any other name.
+func (id *Identity) Field(name string) *string {
+	switch name {
+	case "take":
+		return &id.Take
+	case "label":
+		return &id.Label
+	case "subject":
+		return &id.Subject
+	case "session":
+		return &id.Session
+	case "split":
+		return &id.Split
+	}
+	return nil
+}
