@@ -32,8 +32,12 @@ type Source struct {
 }
 
 // Source prepares a valid take, which must not change as long as the source
-// is in use. The work that is the same for all draws is done here, once.
+// is in use. The work that is the same for all draws is done here, once. A
+// layout without channel groups is a mistake of the caller.
 func (m *Maker) Source(t *channels.Take) *Source {
+	if len(t.Layout.Groups) == 0 {
+		panic("augment: the layout of a source take has no channel groups")
+	}
 	s := &Source{maker: m, take: t}
 	if m.variation.Method == Path {
 		s.draw = newPathSource(m, t).draw

@@ -88,7 +88,7 @@ func TestDrawsAreSound(t *testing.T) {
 			Spread:     rapid.Float64Range(0, 0.33).Draw(t, "spread"),
 			TimeShare:  rapid.Float64Range(0, 1).Draw(t, "time share"),
 			Straighten: rapid.SampledFrom([]float64{0, 0.5, 1}).Draw(t, "straighten"),
-			Trim:       rapid.Float64Range(0, 0.2).Draw(t, "trim"),
+			Trim:       rapid.Float64Range(0, 0.15).Draw(t, "trim"),
 			Coupling:   rapid.Float64Range(0, 1).Draw(t, "coupling"),
 		}
 		if v.Method == augment.Path && rapid.Bool().Draw(t, "regression") {

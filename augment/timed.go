@@ -19,16 +19,21 @@ type timedSource struct {
 	samples path.Samples
 	clock   *path.Clock
 	time    []float64 // of the new takes: the source's, or evenly spaced where the source's steps differ
+	along   []float64 // the parameter along the path at each frame of the new takes
 }
 
 func newTimedSource(m *Maker, t *channels.Take) *timedSource {
 	arc := path.NewArc(m.scaled(t), t.Width())
-	return &timedSource{
+	s := &timedSource{
 		maker: m, take: t,
 		samples: path.Samples{Time: t.Time, Values: t.Data, Width: t.Width()},
 		clock:   path.NewClock(t.Time, arc.Cumulative(), m.variation.TimeShare),
 		time:    evenClock(t.Time),
 	}
+	for _, at := range s.time {
+		s.along = append(s.along, s.clock.Parameter((at-t.Time[0])/t.Duration()))
+	}
+	return s
 }
 
 // unevenStep is the relative deviation of a frame's step from the median step
@@ -71,9 +76,12 @@ func evenClock(clock []float64) []float64 {
 // maxTrimDeviations bounds a trim draw, in standard deviations.
 const maxTrimDeviations = 2.5
 
+// trimKey is the group name under which trims are drawn, which no limb has.
+const trimKey = "\x00trim"
+
 // trims draws the shifts of start and end as fractions of the duration.
 func (s *timedSource) trims(draw int) (start, end float64) {
-	rng := Generator(s.maker.seed, s.take.ID, draw, "trim")
+	rng := Generator(s.maker.seed, s.take.ID, draw, trimKey)
 	shift := func() float64 {
 		return s.maker.variation.Trim * min(max(rng.NormFloat64(), -maxTrimDeviations), maxTrimDeviations)
 	}
@@ -96,7 +104,7 @@ func (s *timedSource) draw(draw int, p map[string]float64) (time, data []float64
 			return first + duration*(start+s.clock.Time(timing.At(p))*(1+end-start))
 		}
 		for i := range shown {
-			shown[i] = instant(s.parameter(i))
+			shown[i] = instant(s.along[i])
 		}
 		for _, g := range t.Layout.Groups {
 			if g.Limb == limb {
@@ -107,19 +115,9 @@ func (s *timedSource) draw(draw int, p map[string]float64) (time, data []float64
 	return slices.Clone(s.time), data
 }
 
-// parameter returns the parameter along the path at frame i of a new take.
-func (s *timedSource) parameter(i int) float64 {
-	return s.clock.Parameter((s.time[i] - s.time[0]) / (s.time[len(s.time)-1] - s.time[0]))
-}
-
-// timingMap lays a smooth map through the drawn intervals, which are all
-// positive.
+// timingMap lays a smooth map through the drawn intervals.
 func timingMap(intervals []float64) *path.Map {
-	m, err := path.NewMap(path.Fractions(make([]float64, len(intervals)+1), intervals))
-	if err != nil {
-		panic("augment: drawn intervals do not rise: " + err.Error())
-	}
-	return m
+	return path.NewMap(path.Fractions(make([]float64, len(intervals)+1), intervals))
 }
 
 // fill reads one group's channels at the shown instants into data, and
@@ -137,7 +135,7 @@ func (s *timedSource) fill(data []float64, list []int, shown []float64, instant 
 	for i, at := range shown {
 		s.samples.At(row, at, list)
 		if straight != nil {
-			straight.Add(row, s.parameter(i))
+			straight.Add(row, s.along[i])
 		}
 		for k, c := range list {
 			data[i*w+c] = row[k]

@@ -46,7 +46,7 @@ type Variation struct {
 	Straighten float64
 
 	// Trim, of TimedPath, is the standard deviation of the shift of a take's
-	// start and of its end, as a fraction of its duration, 0 to 0.2. A shift
+	// start and of its end, as a fraction of its duration, 0 to 0.15. A shift
 	// outwards holds the end frame.
 	Trim float64
 
@@ -83,6 +83,13 @@ func methodNames() []string {
 	return out
 }
 
+// Bounds of a variation. Two trims at their largest draw leave a quarter of a
+// take; more knots than this are no more than noise.
+const (
+	maxTrim  = 0.15
+	maxKnots = 4096
+)
+
 // RangeError says that one value of a variation is outside its legal range.
 type RangeError struct {
 	Field   string // name of the field in lower case, words joined by underscores: "time_share"
@@ -97,14 +104,14 @@ func (v Variation) Validate() error {
 	if _, err := ParseMethod(string(v.Method)); err != nil {
 		return &RangeError{"method", fmt.Sprintf("is %q; legal methods are %s", v.Method, strings.Join(methodNames(), ", "))}
 	}
-	if v.Knots < 3 && (v.Knots != 0 || v.Method != Path) {
-		return &RangeError{"knots", fmt.Sprintf("is %d; it must be 3 or more (0, for method %s, takes the published regression)", v.Knots, Path)}
+	if (v.Knots < 3 || v.Knots > maxKnots) && (v.Knots != 0 || v.Method != Path) {
+		return &RangeError{"knots", fmt.Sprintf("is %d; it must be 3 or more, up to %d (0, for method %s, takes the published regression)", v.Knots, maxKnots, Path)}
 	}
 	for _, f := range []struct {
 		name      string
 		value, to float64
 	}{
-		{"time_share", v.TimeShare, 1}, {"straighten", v.Straighten, 1}, {"trim", v.Trim, 0.2}, {"coupling", v.Coupling, 1},
+		{"time_share", v.TimeShare, 1}, {"straighten", v.Straighten, 1}, {"trim", v.Trim, maxTrim}, {"coupling", v.Coupling, 1},
 	} {
 		if !(f.value >= 0 && f.value <= f.to) {
 			return &RangeError{f.name, fmt.Sprintf("is %g; it must lie between 0 and %g", f.value, f.to)}

@@ -61,19 +61,19 @@ func lookUp(x, y []float64, v float64) float64 {
 type Map struct{ curve interp.FritschButland }
 
 // NewMap lays a monotone cubic (Fritsch & Butland, SIAM J. Sci. Stat. Comput.
-// 5 (1984) 300) through n evenly spaced knots: the source parameter at knot k
-// is fractions[k], rising strictly from 0 to 1. A map without kinks gives
+// 5 (1984) 300) through n ≥ 2 evenly spaced knots: the source parameter at knot
+// k is fractions[k], rising strictly from 0 to 1. A map without kinks gives
 // tempo without steps.
-func NewMap(fractions []float64) (*Map, error) {
+func NewMap(fractions []float64) *Map {
 	knots := make([]float64, len(fractions))
 	for k := range knots {
 		knots[k] = float64(k) / float64(len(knots)-1)
 	}
 	m := new(Map)
 	if err := m.curve.Fit(knots, fractions); err != nil {
-		return nil, err
+		panic("path: no curve through the knots of a map: " + err.Error())
 	}
-	return m, nil
+	return m
 }
 
 // At returns the source parameter shown at parameter p, both in [0, 1].
