@@ -1,0 +1,68 @@
+package job
+
+import (
+	"runtime"
+
+	"github.com/spf13/pflag"
+)
+
+// NewPlan returns a plan with every default in place.
+func NewPlan() *Plan {
+	return &Plan{
+		Method:    "timed-path",
+		PerTake:   32,
+		Seed:      1,
+		Distance:  []string{"euclidean-dependent", "dtw-dependent"},
+		Normalise: "none",
+		Band:      0.1,
+		Repeats:   10,
+		Tables:    []string{"takes"},
+		Workers:   runtime.GOMAXPROCS(0),
+	}
+}
+
+// ReadFlags adds the flags that say what to read.
+func (p *Plan) ReadFlags(f *pflag.FlagSet) {
+	f.StringVar(&p.Pattern, "pattern", p.Pattern, "identity in the path of one-take files, such as '{subject}/{label}_{session}_{take}.csv'")
+	f.StringVar(&p.Label, "label", p.Label, "label of takes that state none")
+	f.StringSliceVar(&p.Columns, "columns", p.Columns, "column names of recordings that have no header line")
+	f.Float64Var(&p.Rate, "rate", p.Rate, "frames per second of recordings that have no time column")
+	f.StringVar(&p.TimeUnit, "time-unit", p.TimeUnit, "unit of a time column that states none: s, ms, us or ns")
+	f.StringArrayVar(&p.Unit, "unit", p.Unit, "unit of channels, CHANNELS=UNIT, such as 'c0-c2=g' (repeatable)")
+	f.StringArrayVar(&p.Group, "group", p.Group, "channel group, NAME=CHANNELS or NAME@LIMB=CHANNELS, such as 'left=c0-c2,c6-c8' (repeatable)")
+	f.StringVar(&p.HoldOut, "hold-out", p.HoldOut, "people kept for the test: subject=NAME,… or a fraction of them")
+}
+
+// MakeFlags adds the flags that say how to make takes.
+func (p *Plan) MakeFlags(f *pflag.FlagSet) {
+	f.StringVar(&p.Method, "method", p.Method, "how takes are made: timed-path, or path (the published method)")
+	f.IntVar(&p.PerTake, "per-take", p.PerTake, "synthetic takes for each recorded one")
+	f.Uint64Var(&p.Seed, "seed", p.Seed, "seed of every random draw")
+	f.IntVar(&p.Knots, "knots", p.Knots, "points at which a path is resampled; few vary much (default by method)")
+	f.Float64Var(&p.Spread, "spread", p.Spread, "variance of the intervals between knots, below 1/3 (default by method)")
+	f.Float64Var(&p.TimeShare, "time-share", p.TimeShare, "weight of time against arc length along a path, 0 to 1 (default by method)")
+	f.Float64Var(&p.Straighten, "straighten", p.Straighten, "strength of displacement normalisation, 0 to 1 (default by method)")
+	f.Float64Var(&p.Trim, "trim", p.Trim, "standard deviation of the shift of start and end, as a fraction of the take (default by method)")
+	f.Float64Var(&p.Coupling, "coupling", p.Coupling, "how far limbs share their timing, 0 to 1 (default by method)")
+}
+
+// ScoreFlags adds the flags that say how to score.
+func (p *Plan) ScoreFlags(f *pflag.FlagSet) {
+	f.StringVar(&p.Protocol, "protocol", p.Protocol, "given, subject or pooled (default: given with a test split, else subject with three people or more, else pooled)")
+	f.StringSliceVar(&p.Distance, "distance", p.Distance, "distances to nearest templates: euclidean- or dtw-, each -dependent or -independent, and direction-cosine")
+	f.StringVar(&p.Normalise, "normalise", p.Normalise, "none, or z: each take and channel to mean 0 and deviation 1")
+	f.Float64Var(&p.Band, "band", p.Band, "half width of the Sakoe–Chiba band as a fraction of the length, 1 for none")
+	f.IntVar(&p.Repeats, "repeats", p.Repeats, "random splits of protocol pooled")
+	f.IntVar(&p.TakesPerLabel, "takes-per-label", p.TakesPerLabel, "recorded training takes of each label in protocol pooled, 0 for half of them")
+}
+
+// WorkFlags adds the flag for the number of workers.
+func (p *Plan) WorkFlags(f *pflag.FlagSet) {
+	f.IntVar(&p.Workers, "workers", p.Workers, "takes worked on at a time; does not change a byte of what is written")
+}
+
+// WriteFlags adds the flags that say what to write.
+func (p *Plan) WriteFlags(f *pflag.FlagSet) {
+	f.StringVar(&p.Out, "out", p.Out, "folder to write the set into; must not exist or be empty")
+	f.StringSliceVar(&p.Tables, "tables", p.Tables, "tables of the set: takes (one row a take), frames (one row a frame)")
+}

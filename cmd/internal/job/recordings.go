@@ -1,0 +1,76 @@
+package job
+
+import (
+	"errors"
+	"io"
+	"strings"
+
+	"strandwise/channels"
+	"strandwise/channels/group"
+	"strandwise/ingest"
+)
+
+// open resolves the plan's recordings. The caller closes them.
+func (p *Plan) open(in io.Reader) (*ingest.Recordings, error) {
+	units, err := p.units()
+	if err != nil {
+		return nil, err
+	}
+	groups, err := p.groups()
+	if err != nil {
+		return nil, err
+	}
+	if len(p.Recordings) == 0 {
+		return nil, p.fault("recordings", "no recordings; name files or folders, or give a plan with --plan")
+	}
+	r, err := ingest.Open(ingest.Options{
+		Paths: p.Recordings, Pattern: p.Pattern, Label: p.Label, Columns: p.Columns,
+		Rate: p.Rate, TimeUnit: p.TimeUnit, Units: units, Groups: groups, Stdin: in,
+	})
+	return r, p.asUsage(err)
+}
+
+// asUsage turns a usage error of ingest into one of the plan, placed at the
+// key it is about.
+func (p *Plan) asUsage(err error) error {
+	var usage *ingest.UsageError
+	if !errors.As(err, &usage) {
+		return err
+	}
+	if usage.Key == "" {
+		return &UsageError{Problem: usage.Error()}
+	}
+	return p.fault(usage.Key, "%s", usage.Error())
+}
+
+// units reads the plan's unit rules, each CHANNELS=UNIT.
+func (p *Plan) units() ([]ingest.UnitRule, error) {
+	var out []ingest.UnitRule
+	for _, rule := range p.Unit {
+		pattern, symbol, ok := strings.Cut(rule, "=")
+		if !ok {
+			return nil, p.fault("unit", "%q is not CHANNELS=UNIT, such as c0-c2=g", rule)
+		}
+		unit, err := channels.ParseUnit(symbol)
+		if err != nil {
+			return nil, p.fault("unit", "%v", err)
+		}
+		out = append(out, ingest.UnitRule{Pattern: strings.TrimSpace(pattern), Unit: unit})
+	}
+	return out, nil
+}
+
+// groups reads the plan's group rules, each NAME=CHANNELS or
+// NAME@LIMB=CHANNELS.
+func (p *Plan) groups() ([]group.Rule, error) {
+	var out []group.Rule
+	for _, rule := range p.Group {
+		name, patterns, ok := strings.Cut(rule, "=")
+		name, limb, _ := strings.Cut(strings.TrimSpace(name), "@")
+		if !ok || name == "" || strings.TrimSpace(patterns) == "" {
+			return nil, p.fault("group", "%q is not NAME=CHANNELS or NAME@LIMB=CHANNELS, such as left=c0-c2,c6-c8", rule)
+		}
+		out = append(out, group.Rule{Name: name, Limb: limb, Channels: strings.Split(patterns, ",")})
+	}
+	return out, nil
+}

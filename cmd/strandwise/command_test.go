@@ -1,0 +1,80 @@
+package main
+
+import (
+	"bytes"
+	"context"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+)
+
+// outcome is what one command line did.
+type outcome struct {
+	code     int
+	out, err string
+}
+
+// strandwise runs one command line with the given standard input.
+func strandwise(t *testing.T, in string, args ...string) outcome {
+	t.Helper()
+	var out, err bytes.Buffer
+	s := Streams{In: strings.NewReader(in), Out: &out, Err: &err}
+	code := ExitCode(s, Run(context.Background(), s, args))
+	return outcome{code, out.String(), err.String()}
+}
+
+// must runs a command line that has to succeed and returns its output.
+func must(t *testing.T, args ...string) string {
+	t.Helper()
+	o := strandwise(t, "", args...)
+	if o.code != exitDone {
+		t.Fatalf("strandwise %s: exit code %d\n%s%s", strings.Join(args, " "), o.code, o.out, o.err)
+	}
+	return o.out
+}
+
+// write writes a file of the test and returns its path.
+func write(t *testing.T, dir, name, text string) string {
+	t.Helper()
+	path := filepath.Join(dir, name)
+	if err := os.MkdirAll(filepath.Dir(path), 0o777); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile(path, []byte(text), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+// contents reads every file below a folder, by its path inside it.
+func contents(t *testing.T, dir string) map[string]string {
+	t.Helper()
+	out := make(map[string]string)
+	err := filepath.WalkDir(dir, func(path string, e os.DirEntry, err error) error {
+		if err != nil || e.IsDir() {
+			return err
+		}
+		data, err := os.ReadFile(path)
+		name, _ := filepath.Rel(dir, path)
+		out[filepath.ToSlash(name)] = string(data)
+		return err
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return out
+}
+
+// openData returns the folder of the open recordings, or skips the test.
+func openData(t *testing.T) string {
+	t.Helper()
+	dir := os.Getenv("STRANDWISE_DATA")
+	if dir == "" {
+		dir = filepath.Join("..", "..", "..", "shared", "data")
+	}
+	if _, err := os.Stat(filepath.Join(dir, "sets")); err != nil {
+		t.Skip("skipped: the open recordings are not there; name their folder in STRANDWISE_DATA")
+	}
+	return dir
+}
