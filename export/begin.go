@@ -33,11 +33,14 @@ func (w *Writer) begin() error {
 		return err
 	}
 	path := filepath.Join(w.dir, markerName)
+	_, missing := os.Lstat(path)
 	var err error
 	if w.marker, err = w.disk.claim(path); err != nil {
 		return err
 	}
-	w.made = append(w.made, path)
+	if missing != nil {
+		w.made = append(w.made, path)
+	}
 	// Another process may have sealed its set before the marker was ours, so
 	// only what is found now may be removed.
 	left, err := leftovers(w.dir)
@@ -48,6 +51,9 @@ func (w *Writer) begin() error {
 		if err := w.disk.remove(path); err != nil {
 			return fmt.Errorf("clean unfinished set: %w", err)
 		}
+	}
+	if missing == nil {
+		w.made = append(w.made, path) // until now an old marker vouches for what is left
 	}
 	if err := w.marker.Truncate(0); err != nil {
 		return err

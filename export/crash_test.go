@@ -129,3 +129,32 @@ func TestCrashInDiscard(t *testing.T) {
 		}
 	}
 }
+
+// TestEveryFailureOverUnfinishedSet lets each step fail while an unfinished
+// set is cleaned and begun again: after Discard the folder can still be used.
+func TestEveryFailureOverUnfinishedSet(t *testing.T) {
+	total, want := steps(t)
+	for at := 1; ; at++ {
+		dir := filepath.Join(t.TempDir(), "set")
+		old := &export.Disk{FailAt: total - 4, Err: errors.New("the process is dead"), Crash: true}
+		if _, err := attempt(t, old, dir); err == nil {
+			t.Fatal("the old set was finished")
+		}
+		old.Die()
+		w, err := attempt(t, &export.Disk{FailAt: at, Err: syscall.EIO}, dir)
+		if err == nil {
+			return // nothing failed: all steps were tried
+		}
+		if w != nil {
+			if err := w.Discard(); err != nil {
+				t.Errorf("step %d: Discard: %v", at, err)
+			}
+		}
+		if _, err := attempt(t, &export.Disk{}, dir); err != nil {
+			t.Fatalf("step %d: begin again: %v", at, err)
+		}
+		if diff := cmp.Diff(want, tree(t, dir)); diff != "" {
+			t.Errorf("step %d: the second run differs (-want +got):\n%s", at, diff)
+		}
+	}
+}

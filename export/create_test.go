@@ -242,6 +242,7 @@ func TestAddRefuses(t *testing.T) {
 	good := troupe(l, 1)
 	clean := t.TempDir()
 	write(t, clean, l, both(), good)
+	large := int64(1) << 40
 	for _, tc := range []struct {
 		name  string
 		spoil func(*channels.Take)
@@ -261,7 +262,7 @@ func TestAddRefuses(t *testing.T) {
 		{"made for testing", func(t *channels.Take) { t.Split, t.Made = channels.Test, &channels.Making{Source: "a"} }, "a synthetic take cannot be in the split test"},
 		{"without a source", func(t *channels.Take) { t.Made = &channels.Making{} }, "needs a source take"},
 		{"a source", func(t *channels.Take) { t.Made = &channels.Making{Source: "\xff"} }, "not UTF-8"},
-		{"a draw", func(t *channels.Take) { t.Made = &channels.Making{Source: "a", Draw: 1 << 40} }, "draw 1099511627776"},
+		{"a draw", func(t *channels.Take) { t.Made = &channels.Making{Source: "a", Draw: int(large)} }, "draw 1099511627776"},
 		{"a parameter", func(t *channels.Take) {
 			t.Made = &channels.Making{Source: "a", Parameters: map[string]float64{"reach": math.Inf(1)}}
 		}, `parameter "reach" is +Inf`},

@@ -7,6 +7,7 @@ import (
 	"io/fs"
 	"path"
 	"path/filepath"
+	"runtime"
 	"slices"
 	"strings"
 
@@ -220,6 +221,9 @@ func (w *Writer) Discard() error {
 	// Backwards, so that a folder is empty when its turn comes, and the marker
 	// goes after all that it vouches for.
 	for _, path := range slices.Backward(w.made) {
+		if runtime.GOOS == "windows" && w.marker != nil && filepath.Base(path) == markerName {
+			w.marker.Close() // an open file cannot be removed there
+		}
 		if err := w.disk.remove(path); err != nil && !errors.Is(err, fs.ErrNotExist) {
 			errs = append(errs, err)
 		}

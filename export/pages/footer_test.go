@@ -100,6 +100,19 @@ func TestStatistics(t *testing.T) {
 	}
 }
 
+// TestListStatistics: the format counts an empty list among the nulls of its
+// elements, and states no bounds of floats.
+func TestListStatistics(t *testing.T) {
+	tb := &table{columns: []pages.Column{{Name: "x", Kind: pages.Float32List}}, values: [][]any{{[]float32{1, 2}, []float32{}, []float32{3}, []float32{}}}}
+	got := open(t, tb.encode(t, nil)).Metadata().RowGroups[0].Columns[0].MetaData
+	if diff := cmp.Diff(format.Statistics{NullCount: 2}, got.Statistics); diff != "" {
+		t.Errorf("statistics (-want +got):\n%s", diff)
+	}
+	if got.NumValues != 5 {
+		t.Errorf("%d entries, want 3 elements and 2 empty lists", got.NumValues)
+	}
+}
+
 func TestStatisticsArePerRowGroup(t *testing.T) {
 	tb := &table{
 		columns: []pages.Column{{Name: "label", Kind: pages.Text}, {Name: "n", Kind: pages.Int32}},
