@@ -55,7 +55,7 @@ func (s *Source) Draw(draw int) *channels.Take {
 	time, data := s.draw(draw, p)
 	return &channels.Take{
 		ID: fmt.Sprintf("%s~%d", t.ID, draw), Label: t.Label, Subject: t.Subject, Session: t.Session, Split: t.Split,
-		Layout: t.Layout, Time: time, Data: data,
+		Layout: t.Layout, Skeleton: t.Skeleton, Time: time, Data: data,
 		Made: &channels.Making{Source: t.ID, Draw: draw, Rank: draw, Method: string(v.Method), Parameters: p},
 	}
 }

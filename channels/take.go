@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"strandwise/channels/body"
 )
 
 // Split names the part of a set a take belongs to.
@@ -43,9 +45,11 @@ type Take struct {
 	Split   Split
 	Where   string // file and line the take begins at, for messages; empty for synthetic takes
 
-	Layout *Layout   // shared and read-only
-	Time   []float64 // seconds, one per frame, strictly increasing
-	Data   []float64 // frames × channels, frame-major, in the layout's units
+	Layout   *Layout        // shared and read-only
+	Skeleton *body.Skeleton // whose joints the channels are, nil for none; shared and read-only
+
+	Time []float64 // seconds, one per frame, strictly increasing
+	Data []float64 // frames × channels, frame-major, in the layout's units
 
 	Made *Making // how a synthetic take was made; nil for a recorded one
 }

@@ -47,7 +47,7 @@ func TestFrameOfSeveralLayouts(t *testing.T) {
 		}
 		return l
 	}
-	f, err := fixFrame(layout("q.quat.w [1]", "hip.angle.x [deg]", "m [mT]", "n"), "first", &Options{})
+	f, err := fixFrame(layout("q.quat.w [1]", "hip.angle.x [deg]", "m [mT]", "n"), "first", &Options{}, keepAll)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -75,7 +75,7 @@ func TestFrameOfSeveralLayouts(t *testing.T) {
 // TestFormatsStandBehindTheContract holds every format to what raw.Format
 // says.
 func TestFormatsStandBehindTheContract(t *testing.T) {
-	for _, f := range formats() {
+	for _, f := range new(Options).formats() {
 		for _, e := range f.Extensions() {
 			if e == "" || e[0] != '.' || e != strings.ToLower(e) {
 				t.Errorf("%T: extension %q", f, e)
@@ -97,3 +97,5 @@ func TestFormatsStandBehindTheContract(t *testing.T) {
 type failing struct{ err error }
 
 func (f failing) Read([]byte) (int, error) { return 0, f.err }
+
+func keepAll(string) bool { return false }

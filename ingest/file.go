@@ -37,6 +37,7 @@ type known struct {
 type file struct {
 	source
 	on       *os.File
+	options  *Options
 	before   *known // nil on the first pass
 	modified time.Time
 	hash     hash.Hash // nil when the hash is known
@@ -45,12 +46,12 @@ type file struct {
 }
 
 // openFile opens a file, which must not have changed since an earlier pass.
-func openFile(s source, before *known) (*file, error) {
+func openFile(s source, o *Options, before *known) (*file, error) {
 	on, err := os.Open(s.path)
 	if err != nil {
 		return nil, &fault.Error{File: s.name, Problem: "cannot be opened", Err: err, Remedy: "check the path and its permissions"}
 	}
-	f := &file{source: s, on: on, before: before}
+	f := &file{source: s, on: on, options: o, before: before}
 	info, err := on.Stat()
 	if err != nil {
 		f.close()
@@ -97,7 +98,7 @@ func (f *file) takes(in raw.Input) raw.Stream {
 			yield(nil, err)
 			return
 		}
-		format := formatOf(head, f.name)
+		format := f.options.formatOf(head, f.name)
 		if kind := kindOf(head); format == nil || kind != "" {
 			yield(nil, f.unknown(kind, len(head) == 0))
 			return

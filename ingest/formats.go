@@ -3,20 +3,26 @@ package ingest
 import (
 	"slices"
 
+	"strandwise/ingest/bvh"
+	"strandwise/ingest/c3d"
 	"strandwise/ingest/delimited"
 	"strandwise/ingest/raw"
 )
 
 // formats lists what can be read, in the order of asking. Delimited text
 // stands last: it takes any text.
-func formats() []raw.Format {
-	return []raw.Format{delimited.Format{}}
+func (o *Options) formats() []raw.Format {
+	return []raw.Format{
+		bvh.Format{LengthUnit: o.LengthUnit},
+		c3d.Format{Stream: o.Stream},
+		delimited.Format{},
+	}
 }
 
 // extensions lists the extensions of all formats.
-func extensions() []string {
+func (o *Options) extensions() []string {
 	var out []string
-	for _, f := range formats() {
+	for _, f := range o.formats() {
 		out = append(out, f.Extensions()...)
 	}
 	return slices.Compact(out)
@@ -24,8 +30,8 @@ func extensions() []string {
 
 // formatOf returns the format of a file that begins with head, nil when none
 // knows it.
-func formatOf(head []byte, name string) raw.Format {
-	for _, f := range formats() {
+func (o *Options) formatOf(head []byte, name string) raw.Format {
+	for _, f := range o.formats() {
 		if f.Sniff(head, name) {
 			return f
 		}

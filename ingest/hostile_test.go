@@ -20,7 +20,7 @@ var update = flag.Bool("update", false, "rewrite the golden files")
 // TestHostileRecordings reads every unsound recording alone. Each must be
 // refused by a fault that says what, where and what to do.
 func TestHostileRecordings(t *testing.T) {
-	files, err := filepath.Glob("testdata/hostile/*.*")
+	files, err := filepath.Glob("../testdata/hostile/*.*")
 	if err != nil || len(files) == 0 {
 		t.Fatal("no recordings", err)
 	}
@@ -33,7 +33,7 @@ func TestHostileRecordings(t *testing.T) {
 		}
 		fmt.Fprintln(&got, filepath.ToSlash(fmt.Sprint(err)))
 	}
-	const golden = "testdata/hostile.golden"
+	const golden = "../testdata/hostile.golden"
 	if *update {
 		if err := os.WriteFile(golden, []byte(got.String()), 0o644); err != nil {
 			t.Fatal(err)

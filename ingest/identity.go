@@ -6,13 +6,12 @@ import (
 
 	"strandwise/channels"
 	"strandwise/ingest/fault"
-	"strandwise/ingest/raw"
 )
 
 // identify names a take from what the recording, the path and the options
 // state, in this order.
-func identify(t *channels.Take, r *raw.Take, s source, label string) error {
-	t.ID = takeID(r.Take, s)
+func (p *pass) identify(t *channels.Take, r piece, s source) error {
+	t.ID = takeID(r.Take.Take, s) + r.suffix
 	for _, name := range []string{"label", "subject", "session", "split"} {
 		own, path := r.Field(name), s.identity.Field(name)
 		if *own != "" && *path != "" && *own != *path {
@@ -27,9 +26,9 @@ func identify(t *channels.Take, r *raw.Take, s source, label string) error {
 		}
 	}
 	if r.Label == "" {
-		r.Label = label
+		r.Label = p.r.options.Label
 	}
-	if r.Label == "" {
+	if r.Label == "" && !p.r.options.Lenient {
 		return &fault.Error{
 			File: s.name, Line: r.Line, Take: t.ID, Problem: "has no label",
 			Remedy: "give it one by a label column, by {label} in the pattern, or by --label",

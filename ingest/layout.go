@@ -13,24 +13,30 @@ import (
 
 // frame is what all takes of a run share, fixed by the first of them.
 type frame struct {
-	layout *channels.Layout
-	file   string          // that fixed it
-	rules  []channels.Unit // unit the rules give each channel; no symbol for none
-	stated []bool          // the first file states a unit
+	leaveOut func(name string) bool
+	layout   *channels.Layout
+	file     string          // that fixed it
+	rules    []channels.Unit // unit the rules give each channel; no symbol for none
+	stated   []bool          // the first file states a unit
 }
 
 // fixFrame makes the layout of a run from the first file.
-func fixFrame(first *raw.Layout, file string, o *Options) (*frame, error) {
-	list := make([]channels.Channel, len(first.Columns))
-	f := &frame{file: file, stated: make([]bool, len(list))}
-	for i, c := range first.Columns {
+func fixFrame(first *raw.Layout, file string, o *Options, leaveOut func(string) bool) (*frame, error) {
+	f := &frame{file: file, leaveOut: leaveOut}
+	wanted := f.wanted(first)
+	if len(wanted) == 0 {
+		return nil, &UsageError{Key: "leave_out", Problem: fmt.Sprintf("no channel of %s is left", file)}
+	}
+	list := make([]channels.Channel, len(wanted))
+	f.stated = make([]bool, len(list))
+	for i, c := range wanted {
 		list[i] = c.Channel
 	}
 	var err error
 	if f.rules, err = applyRules(list, o.Units); err != nil {
 		return nil, err
 	}
-	for i, c := range first.Columns {
+	for i, c := range wanted {
 		f.stated[i] = c.Unit != ""
 		if list[i], _, err = f.convert(c.Channel, i, c.Unit, file); err != nil {
 			return nil, err
@@ -38,6 +44,11 @@ func fixFrame(first *raw.Layout, file string, o *Options) (*frame, error) {
 	}
 	f.layout, err = grouped(list, o.Groups)
 	return f, err
+}
+
+// wanted returns the columns of a file that are not left out.
+func (f *frame) wanted(l *raw.Layout) []raw.Column {
+	return slices.DeleteFunc(slices.Clone(l.Columns), func(c raw.Column) bool { return f.leaveOut(c.Channel.Name) })
 }
 
 // applyRules finds the unit the rules give each channel; the last rule holds.
@@ -108,16 +119,16 @@ func (f *frame) unstated() []string {
 
 // fit is how the columns of one file become the channels of the run.
 type fit struct {
+	columns int       // of the file
 	from    []int     // channel i is column from[i]
 	factor  []float64 // and is multiplied by factor[i]
 	plain   bool      // every channel is its own column, unchanged
-	scratch []float64 // one frame
 }
 
 // fit matches the columns of a file with the channels by name, in any order.
 func (f *frame) fit(l *raw.Layout, file string) (*fit, error) {
 	n := len(f.layout.Channels)
-	out := &fit{from: make([]int, n), factor: make([]float64, n), plain: true, scratch: make([]float64, n)}
+	out := &fit{from: make([]int, n), factor: make([]float64, n), columns: len(l.Columns), plain: len(l.Columns) == n}
 	for i, c := range f.layout.Channels {
 		at := slices.IndexFunc(l.Columns, func(x raw.Column) bool { return x.Channel.Name == c.Name })
 		if at < 0 {
@@ -134,8 +145,8 @@ func (f *frame) fit(l *raw.Layout, file string) (*fit, error) {
 		out.from[i], out.factor[i] = at, factor
 		out.plain = out.plain && at == i && factor == 1
 	}
-	if len(l.Columns) > n {
-		for _, x := range l.Columns {
+	if wanted := f.wanted(l); len(wanted) > n {
+		for _, x := range wanted {
 			if f.layout.Index(x.Channel.Name) < 0 {
 				return nil, f.mismatch(file, x.Channel.Name, "is extra; "+f.file+" does not have it")
 			}
@@ -156,18 +167,21 @@ func (f *frame) unitMismatch(file, channel, stated string) error {
 	return &fault.Error{File: file, Channel: channel, Problem: problem, Remedy: "state the unit in every header, or with --unit"}
 }
 
-// apply reorders and converts the values of a take in place.
-func (t *fit) apply(data []float64) {
-	if t.plain {
-		return
+// apply returns the values of a take in the channels of the run, reordered and
+// converted in place.
+func (t *fit) apply(data []float64) []float64 {
+	if t.plain || t.columns == 0 {
+		return data
 	}
-	n := len(t.from)
-	for ; len(data) >= n && n > 0; data = data[n:] {
-		copy(t.scratch, data)
-		for i, from := range t.from {
-			data[i] = t.scratch[from] * t.factor[i]
+	n, row := len(t.from), make([]float64, t.columns)
+	out := data[:0] // never ahead of what is read: there are no more channels than columns
+	for ; len(data) >= t.columns; data = data[t.columns:] {
+		copy(row, data)
+		for i := range n {
+			out = append(out, row[t.from[i]]*t.factor[i])
 		}
 	}
+	return out
 }
 
 // abbreviate joins names, leaving out most of a long list.

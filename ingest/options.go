@@ -37,6 +37,24 @@ type Options struct {
 	// Columns names the columns of delimited text that has no header.
 	Columns []string
 
+	// LeaveOut names columns that are not wanted as channels, by name or glob.
+	LeaveOut []string
+
+	// LengthUnit is the unit of length of files that state none: m, cm, mm or
+	// in. Empty leaves it to the reader, which says what it takes.
+	LengthUnit string
+
+	// Stream is what of a C3D file is read: "points" or "analog". Empty is
+	// points.
+	Stream string
+
+	// Repair says what may be repaired. The zero value repairs nothing.
+	Repair Repair
+
+	// Lenient passes takes on as they are recorded: without a label, with
+	// values missing (NaN) and whatever [channels.Take.Validate] would refuse.
+	Lenient bool
+
 	// Units add to or override the units the recordings state. Where several
 	// rules match a channel, the last one holds.
 	Units []UnitRule

@@ -5,6 +5,7 @@ import (
 	"fmt"
 
 	"strandwise/channels"
+	"strandwise/channels/group"
 	"strandwise/ingest/fault"
 	"strandwise/ingest/raw"
 )
@@ -18,7 +19,10 @@ type pass struct {
 	files   map[int]known
 	beside  map[string]File
 	notices notices
-	yield   func(*channels.Take, error) bool
+	repairs Repairs
+
+	unwanted map[string]bool // patterns of columns to leave out that matched one
+	yield    func(*channels.Take, error) bool
 }
 
 func (p *pass) run() error {
@@ -31,7 +35,7 @@ func (p *pass) run() error {
 		if k, ok := p.r.files[i]; ok {
 			before = &k
 		}
-		f, err := openFile(s, before)
+		f, err := openFile(s, &p.r.options, before)
 		if err != nil {
 			return err
 		}
@@ -39,6 +43,11 @@ func (p *pass) run() error {
 		f.close()
 		if err != nil {
 			return err
+		}
+	}
+	for _, pattern := range p.r.options.LeaveOut {
+		if !p.unwanted[pattern] {
+			return &UsageError{Key: "leave_out", Problem: fmt.Sprintf("no column is named %q", pattern)}
 		}
 	}
 	if len(p.seen) == 0 {
@@ -49,7 +58,7 @@ func (p *pass) run() error {
 
 func (p *pass) file(f *file, index int) error {
 	in := raw.Input{
-		Name: f.name, Path: f.path, Columns: p.r.options.Columns, TimeUnit: p.r.options.TimeUnit,
+		Name: f.name, Path: f.path, Columns: p.r.options.Columns, TimeUnit: p.r.options.TimeUnit, LeaveOut: p.leaveOut,
 		Notice: func(text, evidence string) { p.notices.add(f.name, text, evidence) },
 		Beside: func(name string) ([]byte, error) {
 			b, file, err := readBeside(f.source, name)
@@ -84,7 +93,7 @@ func (p *pass) file(f *file, index int) error {
 // file fixes.
 func (p *pass) fit(l *raw.Layout, file string) (*fit, error) {
 	if p.r.frame == nil {
-		f, err := fixFrame(l, file, &p.r.options)
+		f, err := fixFrame(l, file, &p.r.options, p.leaveOut)
 		if err != nil {
 			return nil, err
 		}
@@ -96,25 +105,53 @@ func (p *pass) fit(l *raw.Layout, file string) (*fit, error) {
 	return p.r.frame.fit(l, file)
 }
 
+// take hands on what a raw take becomes: itself, or the pieces of it.
 func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
-	out := &channels.Take{Layout: p.r.frame.layout, Time: t.Time, Data: t.Data}
-	if err := identify(out, t, s, p.r.options.Label); err != nil {
+	if err := p.clock(t, s); err != nil {
+		return err
+	}
+	t.Data = fitted.apply(t.Data)
+	mended, err := p.mend(t, s)
+	if err != nil {
+		return err
+	}
+	for _, piece := range mended {
+		if err := p.hand(piece, s, index); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// hand hands on one take.
+func (p *pass) hand(t piece, s source, index int) error {
+	out := &channels.Take{Layout: p.r.frame.layout, Skeleton: t.Skeleton, Time: t.Time, Data: t.Data}
+	if err := p.identify(out, t, s); err != nil {
 		return err
 	}
 	if earlier, again := p.seen.enter(out.ID, index, t.Line); again {
 		return repeated(out.ID, p.r.sources[earlier.file], int(earlier.line), s, t.Line)
 	}
-	if err := p.clock(t, s); err != nil {
-		return err
-	}
-	fitted.apply(t.Data)
-	if err := out.Validate(); err != nil {
-		return &fault.Error{File: s.name, Line: t.Line, Problem: err.Error(), Remedy: "leave the take out or record it again"}
+	if !p.r.options.Lenient {
+		if err := out.Validate(); err != nil {
+			return &fault.Error{File: s.name, Line: t.Line, Problem: err.Error(), Remedy: "leave the take out or record it again"}
+		}
 	}
 	if !p.yield(out, nil) {
 		return errStopped
 	}
 	return nil
+}
+
+// leaveOut tells whether the user leaves a column out.
+func (p *pass) leaveOut(name string) bool {
+	for _, pattern := range p.r.options.LeaveOut {
+		if found, _ := group.Match([]channels.Channel{{Name: name}}, pattern); len(found) > 0 {
+			p.unwanted[pattern] = true
+			return true
+		}
+	}
+	return false
 }
 
 // clock turns frame numbers into seconds.

@@ -23,6 +23,7 @@ type source struct {
 
 // finder resolves what the user named into files.
 type finder struct {
+	options *Options
 	pattern *pathPattern // nil for none
 	sources []source
 	seen    map[string]bool
@@ -85,7 +86,7 @@ func (f *finder) addFolder(root string) error {
 		case hidden || d.IsDir():
 		case !isFile(path, d):
 			f.notices.add(path, "is no regular file and is left out", "")
-		case !knownExtension(path):
+		case !f.knownExtension(path):
 			f.notices.add(path, "is no recording by its extension and is left out", "")
 		case !f.match(path):
 			f.notices.add(path, fmt.Sprintf("does not match the pattern %q and is left out", f.pattern.text), "")
@@ -102,7 +103,7 @@ func (f *finder) nothingIn(root string) error {
 	if f.pattern != nil {
 		return &UsageError{Key: "recordings", Problem: fmt.Sprintf("no recording in folder %s matches the pattern %q", root, f.pattern.text)}
 	}
-	return &UsageError{Key: "recordings", Problem: fmt.Sprintf("no recording in folder %s; recordings end in %s", root, strings.Join(extensions(), ", "))}
+	return &UsageError{Key: "recordings", Problem: fmt.Sprintf("no recording in folder %s; recordings end in %s", root, strings.Join(f.options.extensions(), ", "))}
 }
 
 // isFile tells whether an entry is a file or a link to one.
@@ -140,6 +141,6 @@ func (f *finder) include(name, tail, path string) bool {
 	return true
 }
 
-func knownExtension(name string) bool {
-	return slices.Contains(extensions(), strings.ToLower(filepath.Ext(unpackedName(name))))
+func (f *finder) knownExtension(name string) bool {
+	return slices.Contains(f.options.extensions(), strings.ToLower(filepath.Ext(unpackedName(name))))
 }

@@ -24,6 +24,7 @@ type Recordings struct {
 	files   map[int]known   // by source, of the last complete pass
 	beside  map[string]File // read along with them
 	notices []string
+	repairs Repairs
 }
 
 // Open resolves the paths and checks the options. It reads no data. The caller
@@ -33,7 +34,7 @@ func Open(o Options) (*Recordings, error) {
 		return nil, err
 	}
 	r := &Recordings{options: o}
-	f := finder{seen: map[string]bool{}, notices: &r.found}
+	f := finder{options: &r.options, seen: map[string]bool{}, notices: &r.found}
 	if o.Pattern != "" {
 		p, err := parsePattern(o.Pattern)
 		if err != nil {
@@ -74,7 +75,7 @@ func (o *Options) check() error {
 // take met, by which it notices one that comes again.
 func (r *Recordings) Takes() channels.Stream {
 	return func(yield func(*channels.Take, error) bool) {
-		p := &pass{r: r, seen: register{}, files: map[int]known{}, beside: map[string]File{}, notices: r.found.clone(), yield: yield}
+		p := &pass{r: r, seen: register{}, files: map[int]known{}, beside: map[string]File{}, notices: r.found.clone(), unwanted: map[string]bool{}, yield: yield}
 		err := p.run()
 		switch {
 		case errors.Is(err, errStopped):
@@ -82,7 +83,7 @@ func (r *Recordings) Takes() channels.Stream {
 			yield(nil, err)
 		default:
 			r.mu.Lock()
-			r.files, r.beside, r.notices = p.files, p.beside, p.notices.lines()
+			r.files, r.beside, r.notices, r.repairs = p.files, p.beside, p.notices.lines(), p.repairs
 			r.mu.Unlock()
 		}
 	}
@@ -111,6 +112,14 @@ func (r *Recordings) Notices() []string {
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	return append([]string(nil), r.notices...)
+}
+
+// Repairs counts what was repaired. It is complete after the first complete
+// pass.
+func (r *Recordings) Repairs() Repairs {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	return r.repairs
 }
 
 // Close removes what was kept of standard input.

@@ -151,24 +151,21 @@ func stamp(text []byte) (whole int64, fraction float64, ok bool) {
 }
 
 // seconds turns the times of a take into seconds in place. A far clock that
-// does not count from an epoch gets its start back. It tells whether the clock
-// was left to count from the start of the take.
-func (c *clock) seconds(times []float64) (fromEpoch bool) {
-	if c.frames {
-		return false
-	}
+// does not count from an epoch gets its start back; one that does is left to
+// count from the start of the take, and its origin is returned.
+func (c *clock) seconds(times []float64) (origin float64, fromEpoch bool) {
 	per := ticks[c.unit]
 	start := 0.0
 	if c.kind != near {
 		start = float64(c.whole) + c.fraction
 		if fromEpoch = math.Abs(start)/per >= epochAway; fromEpoch {
-			start = 0
+			origin, start = start/per, 0
 		}
 	}
 	for i, t := range times {
 		times[i] = (start + t) / per
 	}
-	return fromEpoch
+	return origin, fromEpoch
 }
 
 // Recordings of body motion have between these many frames per second (common

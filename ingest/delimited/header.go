@@ -79,9 +79,10 @@ func readHeader(names []string) (*table, error) {
 	return t, nil
 }
 
-// settle finishes the table with the first row: a channel column whose first
-// value is text is left out, and the rest make the layout.
-func (t *table) settle(isText func(column int) bool) error {
+// settle finishes the table with the first row: a channel column that the user
+// leaves out or whose first value is text is left out, and the rest make the
+// layout.
+func (t *table) settle(isText, leaveOut func(column int) bool) error {
 	t.layout = &raw.Layout{}
 	seen := map[string]bool{}
 	for i := range t.columns {
@@ -89,7 +90,7 @@ func (t *table) settle(isText func(column int) bool) error {
 		if c.role != channelRole {
 			continue
 		}
-		if isText(i) {
+		if leaveOut(i) || isText(i) {
 			c.role = leftOutRole
 			continue
 		}

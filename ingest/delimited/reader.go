@@ -8,6 +8,7 @@ import (
 	"math"
 	"strings"
 
+	"strandwise/channels"
 	"strandwise/ingest/fault"
 	"strandwise/ingest/raw"
 )
@@ -31,6 +32,7 @@ type reader struct {
 
 	take   *raw.Take    // being read, nil before the first row
 	key    [keys]string // its identity
+	due    int          // line in which the next frame of the take would follow on
 	frames int          // of the take before, the first guess at the size of the next
 	now    float64      // time of the row being read
 	one    [1]float64   // a value on its way
@@ -51,6 +53,7 @@ func (d *reader) read(r io.Reader) error {
 				break
 			}
 			d.block.pos += n
+			d.stand(d.line)
 			d.line++
 		}
 		row, line, err := d.next()
@@ -201,8 +204,17 @@ func (d *reader) row(row []byte, line int) error {
 		}
 	}
 	d.take.Time = append(d.take.Time, now)
+	d.stand(line)
 	d.remember(row, fields)
 	return nil
+}
+
+// stand notes the line of the frame that was added last.
+func (d *reader) stand(line int) {
+	if line != d.due {
+		d.take.Jumps = append(d.take.Jumps, raw.Jump{Frame: len(d.take.Time) - 1, Line: line})
+	}
+	d.due = line + 1
 }
 
 func (d *reader) wrongCount(line int) error {
@@ -218,10 +230,11 @@ func (d *reader) wrongCount(line int) error {
 // written.
 func (d *reader) settle(line int) error {
 	fields := d.split.fields
-	err := d.table.settle(func(i int) bool {
+	isText := func(i int) bool {
 		_, how := d.number(fields[i].text)
 		return how == isText
-	})
+	}
+	err := d.table.settle(isText, d.unwanted)
 	if err != nil {
 		return d.fault(d.header, "", err.Error(), "rename one of them")
 	}
@@ -230,7 +243,7 @@ func (d *reader) settle(line int) error {
 	}
 	for i, c := range d.table.columns {
 		switch {
-		case c.role == leftOutRole:
+		case c.role == leftOutRole && !d.unwanted(i):
 			d.in.Notice(fmt.Sprintf("column %q is no channel and is left out", c.name), "it begins with "+quote(fields[i].text))
 		case c.role == clockRole:
 			d.number(fields[i].text) // may decide the decimal mark
@@ -242,6 +255,16 @@ func (d *reader) settle(line int) error {
 	}
 	d.steps = plan(d.table.columns)
 	return nil
+}
+
+// unwanted tells whether the user leaves a column out.
+func (d *reader) unwanted(i int) bool {
+	if d.in.LeaveOut == nil {
+		return false
+	}
+	name := d.table.columns[i].name
+	ch, _ := channels.ParseHeader(name)
+	return d.in.LeaveOut(name) || d.in.LeaveOut(ch.Name)
 }
 
 // number reads a field by the slow path. The first number with a decimal mark
@@ -258,10 +281,10 @@ func (d *reader) number(text []byte) (float64, reading) {
 	return read(text, d.point)
 }
 
-// value reads the value of a channel.
+// value reads the value of a channel, NaN where it is missing.
 func (d *reader) value(text []byte, line int, name string) (float64, error) {
 	v, how := d.number(text)
-	if how == isNumber {
+	if how == isNumber || how == isMissing {
 		return v, nil
 	}
 	return 0, d.notNumber(text, how, line, name)
@@ -286,7 +309,8 @@ func (d *reader) notNumber(text []byte, how reading, line int, name string) erro
 	return d.fault(line, name, quote(text)+" is not a number", "repair the value, or leave the take out")
 }
 
-// time reads the time of a row, which must come after the one before.
+// time reads the time of a row. Whether it comes after the one before is for
+// the stages behind to judge.
 func (d *reader) time(text []byte, line int) (float64, error) {
 	c, times := &d.table.clock, d.take.Time
 	var now float64
@@ -309,14 +333,6 @@ func (d *reader) time(text []byte, line int) (float64, error) {
 		return 0, d.notNumber(text, how, line, c.name)
 	case c.frames && now != math.Trunc(now):
 		return 0, d.fault(line, c.name, quote(text)+" is no whole number", "name the column time if it holds time")
-	case len(times) > 0 && !(now > times[len(times)-1]):
-		what := " comes before the time in the row above"
-		if now == times[len(times)-1] {
-			what = " is the time in the row above again"
-		}
-		e := d.fault(line, c.name, quote(text)+what, "sort the rows by time and remove repeated ones, or tell the takes apart by a take column")
-		e.Take = d.take.Take
-		return 0, e
 	}
 	return now, nil
 }

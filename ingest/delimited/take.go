@@ -57,6 +57,7 @@ func (d *reader) begin(line int) {
 	if d.table.clock.frames {
 		d.take.Clock = raw.Frames
 	}
+	d.due = line
 }
 
 func (d *reader) twoIdentities(k int, now []byte, line int) error {
@@ -102,7 +103,8 @@ func (d *reader) setClock(t *raw.Take) error {
 		}
 		d.in.Notice(fmt.Sprintf("time column %q states no unit and is read as %s", c.name, c.unit), evidence)
 	}
-	if c.seconds(t.Time) {
+	origin, fromEpoch := c.seconds(t.Time)
+	if t.Origin = origin; fromEpoch {
 		d.in.Notice(fmt.Sprintf("time column %q counts from a distant epoch, so each take's clock is set to begin at 0", c.name), "")
 	}
 	return nil

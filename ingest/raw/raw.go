@@ -11,8 +11,10 @@ package raw
 import (
 	"io"
 	"iter"
+	"sort"
 
 	"strandwise/channels"
+	"strandwise/channels/body"
 )
 
 // Format reads one kind of file.
@@ -38,10 +40,16 @@ const SniffSize = 4096
 
 // Input says what is being read, and how the user wants it read.
 type Input struct {
-	Name     string   // file as the user named it, for messages
-	Path     string   // file on disk
-	Columns  []string // names of the columns of a table without a header
-	TimeUnit string   // unit of a time column that does not state its own: s, ms, us, ns, or empty
+	Name    string   // file as the user named it, for messages
+	Path    string   // file on disk
+	Columns []string // names of the columns of a table without a header
+
+	// LeaveOut tells whether the user leaves a column out: its values, whatever
+	// they are, need not be read. Nil leaves none out. A format may ignore it;
+	// the column is then dropped later.
+	LeaveOut func(column string) bool
+
+	TimeUnit string // unit of a time column that does not state its own: s, ms, us, ns, or empty
 
 	// Beside returns the whole of a small file that stands in the folder of
 	// this one and belongs to it. The error is a fault; errors.Is finds
@@ -61,13 +69,31 @@ type Stream = iter.Seq2[*Take, error]
 type Take struct {
 	Identity
 	Line   int     // 1-based line the take begins at, 0 in a binary file
+	Jumps  []Jump  // where the lines of the frames do not follow on one from the other
 	Layout *Layout // shared by the takes of one file
 	Clock  Clock   // what Time counts
+	Origin float64 // when Time is 0, in seconds since 1970 UTC; 0 when the file does not say
 	Time   []float64
 	Data   []float64 // frames × channels, frame-major, as recorded; NaN where Missing says so
 
-	Missing     []Missing    // values the file leaves out, by frame and then column
-	Annotations []Annotation // what the file says happened when, by start
+	Skeleton    *body.Skeleton // whose joints the channels are, nil when the file has none; shared and read-only
+	Missing     []Missing      // values the file leaves out, by frame and then column
+	Annotations []Annotation   // what the file says happened when, by start
+}
+
+// Jump says that the frames from Frame on stand in the lines from Line on.
+type Jump struct{ Frame, Line int }
+
+// LineOf returns the 1-based line a frame stands in, 0 in a binary file.
+func (t *Take) LineOf(frame int) int {
+	if t.Line == 0 {
+		return 0
+	}
+	i := sort.Search(len(t.Jumps), func(i int) bool { return t.Jumps[i].Frame > frame })
+	if i == 0 {
+		return t.Line + frame
+	}
+	return t.Jumps[i-1].Line + frame - t.Jumps[i-1].Frame
 }
 
 // Missing is one value a file leaves out: an empty field, a marker not seen.
