@@ -27,6 +27,7 @@ type Manifest struct {
 	Seed           uint64          `json:"seed,string"` // a JSON string: readers lose digits of numbers above 2^53
 	Plan           json.RawMessage `json:"plan"`
 	Recordings     []Recording     `json:"recordings"`
+	Repairs        json.RawMessage `json:"repairs"` // counts of what was repaired in them; null when nothing was looked for
 	Cautions       []string        `json:"cautions"`
 	Notices        []string        `json:"notices"` // what this run has to say about itself
 	Layout         Layout          `json:"layout"`
@@ -76,6 +77,7 @@ func (w *Writer) manifest(notices []string) *Manifest {
 		Seed:           w.options.Seed,
 		Plan:           w.options.Plan,
 		Recordings:     append([]Recording{}, w.options.Recordings...),
+		Repairs:        w.options.Repairs,
 		Cautions:       Cautions(),
 		Notices:        append([]string{}, notices...),
 		Layout:         describeLayout(w.layout),

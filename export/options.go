@@ -54,6 +54,7 @@ type Options struct {
 	Seed       uint64          // that the takes were made with
 	Plan       json.RawMessage // the plan as JSON; null when empty
 	Recordings []Recording     // what the takes were read from, in order
+	Repairs    json.RawMessage // what was repaired in them, as a JSON object of counts; null when empty
 }
 
 // Recording identifies one input file by its content.
@@ -77,8 +78,13 @@ func (o Options) withDefaults() (Options, error) {
 	if o.FileBytes < 0 {
 		errs = append(errs, fmt.Errorf("files of %d bytes: legal are 1 and more, and 0 for the default", o.FileBytes))
 	}
-	if len(o.Plan) > 0 && !json.Valid(o.Plan) {
-		errs = append(errs, errors.New("the plan is not valid JSON"))
+	for name, text := range map[string]*json.RawMessage{"plan": &o.Plan, "repairs": &o.Repairs} {
+		if len(*text) == 0 {
+			*text = json.RawMessage("null")
+		}
+		if !json.Valid(*text) {
+			errs = append(errs, fmt.Errorf("the %s is not valid JSON", name))
+		}
 	}
 	wanted := o.Tables
 	o.Tables = []Table{Takes}
@@ -90,9 +96,6 @@ func (o Options) withDefaults() (Options, error) {
 	}
 	if o.FileBytes == 0 {
 		o.FileBytes = DefaultFileBytes
-	}
-	if len(o.Plan) == 0 {
-		o.Plan = json.RawMessage("null")
 	}
 	return o, errors.Join(errs...)
 }

@@ -9,15 +9,17 @@ import (
 // NewPlan returns a plan with every default in place.
 func NewPlan() *Plan {
 	return &Plan{
-		Method:    "timed-path",
-		PerTake:   32,
-		Seed:      1,
-		Distance:  []string{"euclidean-dependent", "dtw-dependent"},
-		Normalise: "none",
-		Band:      0.1,
-		Repeats:   10,
-		Tables:    []string{"takes"},
-		Workers:   runtime.GOMAXPROCS(0),
+		Interpolate: "linear",
+		LongestGap:  3,
+		Method:      "timed-path",
+		PerTake:     32,
+		Seed:        1,
+		Distance:    []string{"euclidean-dependent", "dtw-dependent"},
+		Normalise:   "none",
+		Band:        0.1,
+		Repeats:     10,
+		Tables:      []string{"takes"},
+		Workers:     runtime.GOMAXPROCS(0),
 	}
 }
 
@@ -30,6 +32,13 @@ func (p *Plan) ReadFlags(f *pflag.FlagSet) {
 	f.StringVar(&p.TimeUnit, "time-unit", p.TimeUnit, "unit of a time column that states none: s, ms, us or ns")
 	f.StringArrayVar(&p.Unit, "unit", p.Unit, "unit of channels, CHANNELS=UNIT, such as 'c0-c2=g' (repeatable)")
 	f.StringArrayVar(&p.Group, "group", p.Group, "channel group, NAME=CHANNELS or NAME@LIMB=CHANNELS, such as 'left=c0-c2,c6-c8' (repeatable)")
+	f.StringSliceVar(&p.LeaveOut, "leave-out", p.LeaveOut, "columns that are no channels, by name or glob")
+	f.StringVar(&p.LengthUnit, "length-unit", p.LengthUnit, "unit of length of files that carry none (BVH): m, cm, mm or in")
+	f.StringVar(&p.Stream, "stream", p.Stream, "what of a C3D file is read: points or analog")
+	f.StringSliceVar(&p.Repair, "repair", p.Repair, "what may be repaired: clock (a uniform clock, short gaps filled), order, duplicates, split, or all")
+	f.Float64Var(&p.ToRate, "to-rate", p.ToRate, "bring recordings to this many frames per second; implies --repair clock")
+	f.StringVar(&p.Interpolate, "interpolate", p.Interpolate, "how repairs fill: linear or cubic")
+	f.IntVar(&p.LongestGap, "longest-gap", p.LongestGap, "missing frames in a row that may be filled or bridged")
 	f.StringVar(&p.HoldOut, "hold-out", p.HoldOut, "people kept for the test: subject=NAME,… or a fraction of them")
 }
 

@@ -197,7 +197,11 @@ func (g *growing) options() export.Options {
 	if err != nil {
 		panic("job: the plan is not JSON: " + err.Error()) // all its fields are plain
 	}
-	o := export.Options{Tables: g.tables, Version: g.version, Seed: plan.Seed, Plan: text}
+	repairs, err := json.Marshal(g.recordings.Repairs())
+	if err != nil {
+		panic("job: repairs are not JSON: " + err.Error())
+	}
+	o := export.Options{Tables: g.tables, Version: g.version, Seed: plan.Seed, Plan: text, Repairs: repairs}
 	for _, f := range g.recordings.Files() {
 		o.Recordings = append(o.Recordings, export.Recording(f))
 	}

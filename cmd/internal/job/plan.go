@@ -30,7 +30,16 @@ type Plan struct {
 	TimeUnit   string   `toml:"time_unit"`
 	Unit       []string `toml:"unit"`
 	Group      []string `toml:"group"`
+	LeaveOut   []string `toml:"leave_out"`
+	LengthUnit string   `toml:"length_unit"`
+	Stream     string   `toml:"stream"`
 	HoldOut    string   `toml:"hold_out"`
+
+	// What to repair.
+	Repair      []string `toml:"repair"`
+	ToRate      float64  `toml:"to_rate"`
+	Interpolate string   `toml:"interpolate"`
+	LongestGap  int      `toml:"longest_gap"`
 
 	// How to make takes.
 	Method     string  `toml:"method"`

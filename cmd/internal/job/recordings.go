@@ -20,12 +20,17 @@ func (p *Plan) open(in io.Reader) (*ingest.Recordings, error) {
 	if err != nil {
 		return nil, err
 	}
+	repair, err := p.repairs()
+	if err != nil {
+		return nil, err
+	}
 	if len(p.Recordings) == 0 {
 		return nil, p.fault("recordings", "no recordings; name files or folders, or give a plan with --plan")
 	}
 	r, err := ingest.Open(ingest.Options{
 		Paths: p.Recordings, Pattern: p.Pattern, Label: p.Label, Columns: p.Columns,
-		Rate: p.Rate, TimeUnit: p.TimeUnit, Units: units, Groups: groups, Stdin: in,
+		Rate: p.Rate, TimeUnit: p.TimeUnit, Units: units, Groups: groups, LeaveOut: p.LeaveOut,
+		LengthUnit: p.LengthUnit, Stream: p.Stream, Repair: repair, Stdin: in,
 	})
 	return r, p.asUsage(err)
 }
@@ -41,6 +46,39 @@ func (p *Plan) asUsage(err error) error {
 		return &UsageError{Problem: usage.Error()}
 	}
 	return p.fault(usage.Key, "%s", usage.Error())
+}
+
+// repairs reads the keys that say what may be repaired.
+func (p *Plan) repairs() (ingest.Repair, error) {
+	r := ingest.Repair{Rate: p.ToRate, LongestGap: p.LongestGap}
+	kinds := map[string]*bool{"clock": &r.Clock, "order": &r.Order, "duplicates": &r.Merge, "split": &r.Split}
+	for _, name := range p.Repair {
+		switch kind, ok := kinds[name]; {
+		case name == "all":
+			r.Clock, r.Order, r.Merge, r.Split = true, true, true, true
+		case ok:
+			*kind = true
+		default:
+			return r, p.fault("repair", "unknown repair %q; legal repairs are clock, order, duplicates, split and all", name)
+		}
+	}
+	switch p.Interpolate {
+	case "linear":
+	case "cubic":
+		r.Cubic = true
+	default:
+		return r, p.fault("interpolate", "unknown interpolation %q; legal are linear and cubic", p.Interpolate)
+	}
+	if !(p.ToRate >= 0 && p.ToRate < 1e6) {
+		return r, p.fault("to_rate", "%g is no frame rate", p.ToRate)
+	}
+	if p.LongestGap < 0 {
+		return r, p.fault("longest_gap", "%d is impossible; it must be 0 or more", p.LongestGap)
+	}
+	if p.LongestGap == 0 {
+		r.LongestGap = -1 // none
+	}
+	return r, nil
 }
 
 // units reads the plan's unit rules, each CHANNELS=UNIT.
