@@ -3,6 +3,7 @@ package ingest
 import (
 	"slices"
 
+	"strandwise/ingest/bids"
 	"strandwise/ingest/bvh"
 	"strandwise/ingest/c3d"
 	"strandwise/ingest/delimited"
@@ -13,6 +14,7 @@ import (
 // stands last: it takes any text.
 func (o *Options) formats() []raw.Format {
 	return []raw.Format{
+		bids.Format{},
 		bvh.Format{LengthUnit: o.LengthUnit},
 		c3d.Format{Stream: o.Stream},
 		delimited.Format{},

@@ -6,17 +6,18 @@ import (
 
 	"strandwise/channels"
 	"strandwise/ingest/fault"
+	"strandwise/ingest/raw"
 )
 
-// identify names a take from what the recording, the path and the options
-// state, in this order.
-func (p *pass) identify(t *channels.Take, r piece, s source) error {
-	t.ID = takeID(r.Take.Take, s) + r.suffix
+// resolve returns the identity of a take from what the recording, the path and
+// the options state, in this order. The take's own name is left as it is.
+func resolve(r *raw.Take, s source, label string) (raw.Identity, error) {
+	id := r.Identity
 	for _, name := range []string{"label", "subject", "session", "split"} {
-		own, path := r.Field(name), s.identity.Field(name)
+		own, path := id.Field(name), s.identity.Field(name)
 		if *own != "" && *path != "" && *own != *path {
-			return &fault.Error{
-				File: s.name, Line: r.Line, Take: t.ID,
+			return id, &fault.Error{
+				File: s.name, Line: r.Line, Take: takeID(r.Take, s),
 				Problem: fmt.Sprintf("the recording states the %s %q, its path %q", name, *own, *path),
 				Remedy:  fmt.Sprintf("correct one of them, or leave {%s} out of the pattern", name),
 			}
@@ -25,9 +26,15 @@ func (p *pass) identify(t *channels.Take, r piece, s source) error {
 			*own = *path
 		}
 	}
-	if r.Label == "" {
-		r.Label = p.r.options.Label
+	if id.Label == "" {
+		id.Label = label
 	}
+	return id, nil
+}
+
+// identify names a take by its resolved identity.
+func (p *pass) identify(t *channels.Take, r piece, s source) error {
+	t.ID = takeID(r.Take.Take, s) + r.suffix
 	if r.Label == "" && !p.r.options.Lenient {
 		return &fault.Error{
 			File: s.name, Line: r.Line, Take: t.ID, Problem: "has no label",

@@ -1,6 +1,7 @@
 package ingest
 
 import (
+	"cmp"
 	"fmt"
 	"slices"
 	"strings"
@@ -18,6 +19,7 @@ type frame struct {
 	file     string          // that fixed it
 	rules    []channels.Unit // unit the rules give each channel; no symbol for none
 	stated   []bool          // the first file states a unit
+	units    []channels.Unit // the first file is in: by rule, as it states, or else as held
 }
 
 // fixFrame makes the layout of a run from the first file.
@@ -28,7 +30,7 @@ func fixFrame(first *raw.Layout, file string, o *Options, leaveOut func(string) 
 		return nil, &UsageError{Key: "leave_out", Problem: fmt.Sprintf("no channel of %s is left", file)}
 	}
 	list := make([]channels.Channel, len(wanted))
-	f.stated = make([]bool, len(list))
+	f.stated, f.units = make([]bool, len(list)), make([]channels.Unit, len(list))
 	for i, c := range wanted {
 		list[i] = c.Channel
 	}
@@ -41,6 +43,7 @@ func fixFrame(first *raw.Layout, file string, o *Options, leaveOut func(string) 
 		if list[i], _, err = f.convert(c.Channel, i, c.Unit, file); err != nil {
 			return nil, err
 		}
+		f.units[i] = f.recordedIn(i, cmp.Or(c.Unit, list[i].Unit))
 	}
 	f.layout, err = grouped(list, o.Groups)
 	return f, err
@@ -103,6 +106,20 @@ func (f *frame) convert(c channels.Channel, i int, stated, file string) (channel
 		return c, 0, &fault.Error{File: file, Problem: err.Error(), Remedy: "correct the header, or state the unit with --unit"}
 	}
 	return held, factor, nil
+}
+
+// recordedIn returns the unit of the values of channel i as recorded: that of a
+// rule, or else the one of this symbol. Numbers without a unit count as they
+// are.
+func (f *frame) recordedIn(i int, symbol string) channels.Unit {
+	if f.rules[i].Symbol != "" {
+		return f.rules[i]
+	}
+	u, err := channels.ParseUnit(symbol)
+	if err != nil {
+		return channels.Unit{Symbol: symbol, Factor: 1}
+	}
+	return u
 }
 
 // unstated lists the channels of known quantity for which neither the file nor

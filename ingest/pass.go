@@ -22,26 +22,13 @@ type pass struct {
 	repairs Repairs
 
 	unwanted map[string]bool // patterns of columns to leave out that matched one
+	check    *checker        // nil to stop at the first fault
 	yield    func(*channels.Take, error) bool
 }
 
 func (p *pass) run() error {
 	for i := range p.r.sources {
-		s, err := p.r.spooled(i)
-		if err != nil {
-			return err
-		}
-		var before *known
-		if k, ok := p.r.files[i]; ok {
-			before = &k
-		}
-		f, err := openFile(s, &p.r.options, before)
-		if err != nil {
-			return err
-		}
-		err = p.file(f, i)
-		f.close()
-		if err != nil {
+		if err := p.source(i); err != nil && !p.check.tolerate(err) {
 			return err
 		}
 	}
@@ -50,10 +37,33 @@ func (p *pass) run() error {
 			return &UsageError{Key: "leave_out", Problem: fmt.Sprintf("no column is named %q", pattern)}
 		}
 	}
-	if len(p.seen) == 0 {
-		return &fault.Error{File: p.r.sources[0].name, Problem: "holds no takes", Remedy: "name the recordings themselves"}
+	if len(p.seen) > 0 {
+		return nil
 	}
-	return nil
+	err := &fault.Error{File: p.r.sources[0].name, Problem: "holds no takes", Remedy: "name the recordings themselves"}
+	if p.check != nil && p.check.faults > 0 || p.check.tolerate(err) {
+		return nil
+	}
+	return err
+}
+
+// source reads one file.
+func (p *pass) source(i int) error {
+	p.check.open(p.r.sources[i].name)
+	s, err := p.r.spooled(i)
+	if err != nil {
+		return err
+	}
+	var before *known
+	if k, ok := p.r.files[i]; ok {
+		before = &k
+	}
+	f, err := openFile(s, &p.r.options, before)
+	if err != nil {
+		return err
+	}
+	defer f.close()
+	return p.file(f, i)
 }
 
 func (p *pass) file(f *file, index int) error {
@@ -80,7 +90,7 @@ func (p *pass) file(f *file, index int) error {
 			}
 			fittedTo = t.Layout
 		}
-		if err := p.take(t, f.source, index, fitted); err != nil {
+		if err := p.take(t, f.source, index, fitted); err != nil && !p.check.tolerate(err) {
 			return err
 		}
 	}
@@ -111,6 +121,12 @@ func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
 		return err
 	}
 	t.Data = fitted.apply(t.Data)
+	id, err := resolve(t, s, p.r.options.Label)
+	p.check.take(t, id, takeID(t.Take, s), p.r.frame)
+	if err != nil {
+		return err
+	}
+	t.Identity = id
 	mended, err := p.mend(t, s)
 	if err != nil {
 		return err

@@ -75,18 +75,29 @@ func (o *Options) check() error {
 // take met, by which it notices one that comes again.
 func (r *Recordings) Takes() channels.Stream {
 	return func(yield func(*channels.Take, error) bool) {
-		p := &pass{r: r, seen: register{}, files: map[int]known{}, beside: map[string]File{}, notices: r.found.clone(), unwanted: map[string]bool{}, yield: yield}
-		err := p.run()
-		switch {
+		p := r.newPass(yield)
+		switch err := p.run(); {
 		case errors.Is(err, errStopped):
 		case err != nil:
 			yield(nil, err)
 		default:
-			r.mu.Lock()
-			r.files, r.beside, r.notices, r.repairs = p.files, p.beside, p.notices.lines(), p.repairs
-			r.mu.Unlock()
+			r.settle(p)
 		}
 	}
+}
+
+func (r *Recordings) newPass(yield func(*channels.Take, error) bool) *pass {
+	return &pass{
+		r: r, seen: register{}, files: map[int]known{}, beside: map[string]File{},
+		notices: r.found.clone(), unwanted: map[string]bool{}, yield: yield,
+	}
+}
+
+// settle keeps what a complete pass found.
+func (r *Recordings) settle(p *pass) {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	r.files, r.beside, r.notices, r.repairs = p.files, p.beside, p.notices.lines(), p.repairs
 }
 
 // Files returns the files that were read, in order, and after them those that

@@ -51,9 +51,10 @@ type Input struct {
 
 	TimeUnit string // unit of a time column that does not state its own: s, ms, us, ns, or empty
 
-	// Beside returns the whole of a small file that stands in the folder of
-	// this one and belongs to it. The error is a fault; errors.Is finds
-	// fs.ErrNotExist in it when there is no such file.
+	// Beside returns the whole of a small file that belongs to this one and
+	// stands in its folder or, by a name that leads up, in one above. The error
+	// is a fault; errors.Is finds fs.ErrNotExist in it when there is no such
+	// file.
 	Beside func(name string) ([]byte, error)
 
 	// Notice tells the user something about this file. The same text is told
