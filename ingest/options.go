@@ -51,6 +51,13 @@ type Options struct {
 	// Repair says what may be repaired. The zero value repairs nothing.
 	Repair Repair
 
+	// Cut says how long recordings are cut into takes; empty is ByAnnotation.
+	Cut Cut
+
+	// Annotations is a file that says when which label was performed in the one
+	// recording that is read; see [cut.Read]. Empty leaves it to the recording.
+	Annotations string
+
 	// Lenient passes takes on as they are recorded: without a label, with
 	// values missing (NaN) and whatever [channels.Take.Validate] would refuse.
 	Lenient bool

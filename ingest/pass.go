@@ -21,9 +21,10 @@ type pass struct {
 	notices notices
 	repairs Repairs
 
-	unwanted map[string]bool // patterns of columns to leave out that matched one
-	check    *checker        // nil to stop at the first fault
-	yield    func(*channels.Take, error) bool
+	annotated string          // recording that the annotations of the options were used on
+	unwanted  map[string]bool // patterns of columns to leave out that matched one
+	check     *checker        // nil to stop at the first fault
+	yield     func(*channels.Take, error) bool
 }
 
 func (p *pass) run() error {
@@ -131,7 +132,11 @@ func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
 	if err != nil {
 		return err
 	}
-	for _, piece := range mended {
+	divided, err := p.divide(mended, t, s)
+	if err != nil {
+		return err
+	}
+	for _, piece := range divided {
 		if err := p.hand(piece, s, index); err != nil {
 			return err
 		}

@@ -58,6 +58,11 @@ func (o *Options) check() error {
 	default:
 		return &UsageError{Key: "time_unit", Problem: fmt.Sprintf("unknown time unit %q; legal units are s, ms, us and ns", o.TimeUnit)}
 	}
+	switch o.Cut {
+	case "", ByAnnotation, ByRest, Whole:
+	default:
+		return &UsageError{Key: "cut", Problem: fmt.Sprintf("unknown way to cut %q; legal are %s, %s and %s", o.Cut, ByAnnotation, ByRest, Whole)}
+	}
 	if !(o.Rate >= 0 && o.Rate < 1e9) {
 		return &UsageError{Key: "rate", Problem: fmt.Sprintf("impossible frame rate %g; it is a positive number of frames per second", o.Rate)}
 	}

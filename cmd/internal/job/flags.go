@@ -39,6 +39,8 @@ func (p *Plan) ReadFlags(f *pflag.FlagSet) {
 	f.Float64Var(&p.ToRate, "to-rate", p.ToRate, "bring recordings to this many frames per second; implies --repair clock")
 	f.StringVar(&p.Interpolate, "interpolate", p.Interpolate, "how repairs fill: linear or cubic")
 	f.IntVar(&p.LongestGap, "longest-gap", p.LongestGap, "missing frames in a row that may be filled or bridged")
+	f.StringVar(&p.Annotations, "annotations", p.Annotations, "file of start, end, label and subject that cuts one long recording into takes")
+	f.StringVar(&p.Cut, "cut", p.Cut, "how long recordings are cut: annotations (the default, where there are any), rest or none")
 	f.StringVar(&p.HoldOut, "hold-out", p.HoldOut, "people kept for the test: subject=NAME,… or a fraction of them")
 }
 

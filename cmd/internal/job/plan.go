@@ -22,18 +22,20 @@ import (
 // Start from [NewPlan].
 type Plan struct {
 	// What to read.
-	Recordings []string `toml:"recordings"`
-	Pattern    string   `toml:"pattern"`
-	Label      string   `toml:"label"`
-	Columns    []string `toml:"columns"`
-	Rate       float64  `toml:"rate"`
-	TimeUnit   string   `toml:"time_unit"`
-	Unit       []string `toml:"unit"`
-	Group      []string `toml:"group"`
-	LeaveOut   []string `toml:"leave_out"`
-	LengthUnit string   `toml:"length_unit"`
-	Stream     string   `toml:"stream"`
-	HoldOut    string   `toml:"hold_out"`
+	Recordings  []string `toml:"recordings"`
+	Pattern     string   `toml:"pattern"`
+	Label       string   `toml:"label"`
+	Columns     []string `toml:"columns"`
+	Rate        float64  `toml:"rate"`
+	TimeUnit    string   `toml:"time_unit"`
+	Unit        []string `toml:"unit"`
+	Group       []string `toml:"group"`
+	LeaveOut    []string `toml:"leave_out"`
+	LengthUnit  string   `toml:"length_unit"`
+	Stream      string   `toml:"stream"`
+	Cut         string   `toml:"cut"`
+	Annotations string   `toml:"annotations"`
+	HoldOut     string   `toml:"hold_out"`
 
 	// What to repair.
 	Repair      []string `toml:"repair"`
@@ -166,6 +168,9 @@ func (p *Plan) read(file string) error {
 	folder := filepath.Dir(file)
 	for i, r := range p.Recordings {
 		p.Recordings[i] = from(folder, r)
+	}
+	if meta.IsDefined("annotations") {
+		p.Annotations = from(folder, p.Annotations)
 	}
 	if meta.IsDefined("out") {
 		p.Out = from(folder, p.Out)
