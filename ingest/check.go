@@ -98,17 +98,25 @@ func (c *checker) take(t *raw.Take, id raw.Identity, name string, f *frame) {
 	file := &c.files[len(c.files)-1]
 	times := clock.Inspect(t.Time)
 	file.take(times)
-	key := cell{id.Label, id.Subject}
-	if c.cells[key] == nil {
-		c.cells[key] = &tally{}
-	}
-	c.cells[key].takes++
-	c.cells[key].seconds += times.Last - times.First
 	l := look{checker: c, take: t, name: name, file: file.File, frame: f}
 	l.clock(times)
 	l.sensors()
 	l.signals(times.Step)
 	c.twice(t, id, name, file.File, f)
+}
+
+// count counts one take of a label and subject: a raw one that was refused, or
+// what a sound one became.
+func (c *checker) count(t *raw.Take) {
+	if c == nil || len(t.Time) == 0 {
+		return
+	}
+	key := cell{t.Label, t.Subject}
+	if c.cells[key] == nil {
+		c.cells[key] = &tally{}
+	}
+	c.cells[key].takes++
+	c.cells[key].seconds += t.Time[len(t.Time)-1] - t.Time[0]
 }
 
 // twice looks for a take like this one among those before.

@@ -79,11 +79,18 @@ func (p *pass) annotations(t *raw.Take, s source) ([]raw.Annotation, string, err
 	if err != nil {
 		return nil, "", err
 	}
-	if a.Epoch && t.Origin == 0 {
+	if !a.Epoch && !(len(a.List) > 0 && a.List[0].Start >= epochAway) {
+		return a.On(0), name, nil // seconds from the start of the recording
+	}
+	if t.Origin == 0 {
 		return nil, "", &fault.Error{File: name, Problem: fmt.Sprintf("states dates, but %s does not say when it began", s.name), Remedy: "state the annotations in seconds from its start"}
 	}
 	return a.On(t.Origin), name, nil
 }
+
+// epochAway is the time in seconds beyond which annotations count from an
+// epoch and not from the start of a recording: some three years.
+const epochAway = 1e8
 
 // atRest cuts pieces where the body comes to rest.
 func (p *pass) atRest(pieces []piece, s source) ([]piece, error) {

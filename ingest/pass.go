@@ -128,20 +128,27 @@ func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
 		return err
 	}
 	t.Identity = id
-	mended, err := p.mend(t, s)
+	divided, err := p.pieces(t, s)
 	if err != nil {
-		return err
-	}
-	divided, err := p.divide(mended, t, s)
-	if err != nil {
+		p.check.count(t)
 		return err
 	}
 	for _, piece := range divided {
+		p.check.count(piece.Take)
 		if err := p.hand(piece, s, index); err != nil {
 			return err
 		}
 	}
 	return nil
+}
+
+// pieces repairs a raw take and cuts it, as far as either was asked for.
+func (p *pass) pieces(t *raw.Take, s source) ([]piece, error) {
+	mended, err := p.mend(t, s)
+	if err != nil {
+		return nil, err
+	}
+	return p.divide(mended, t, s)
 }
 
 // hand hands on one take.

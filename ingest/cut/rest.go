@@ -62,25 +62,28 @@ func (e *NoRest) Error() string {
 // taken for that low.
 const (
 	enterPart = 0.5
-	leavePart = 0.25
+	leavePart = 0.35
 	contrast  = 10
 	floor     = -80
 )
 
 // AtRest finds the movements of a recording on a uniform clock. Time is in
-// seconds, data are frame-major, and columns are the channels that are looked
-// at; nil is all of them.
+// seconds, data are frame-major, and groups list the channels that are looked
+// at, those of one sensor or body part together; nil is one group of all.
 //
-// The energy of a frame is the mean over the channels of the squared change
-// across it, over half of Smoothing, each in units of the mean change of its
-// channel; so units, gravity and rate make no difference. It is averaged over
-// Smoothing and taken in decibels. Otsu's threshold ("A threshold selection method from gray-level
-// histograms", IEEE Trans. Systems, Man and Cybernetics 9 (1979) 62) parts the
-// frames of low energy from those of high energy; the medians of the two are
-// rest and movement, and the thresholds with hysteresis lie between them.
-// Movements parted by less than Least are one. Changes from or to a missing
-// value are left out.
-func AtRest(time, data []float64, width int, columns []int, o Rest) (*Movements, error) {
+// The energy of a group is its squared change across a frame, over half of
+// Smoothing: the sum over its channels, so these must be in one unit. It is
+// averaged over Smoothing and taken in decibels below its highest; the level
+// of a frame is the mean over the groups. So units, gravity, rate and the
+// number of channels make no difference, and a channel that only has noise
+// hides nothing. Changes from or to a missing value are left out.
+//
+// Otsu's threshold ("A threshold selection method from gray-level histograms",
+// IEEE Trans. Systems, Man and Cybernetics 9 (1979) 62) parts the frames of
+// low level from those of high level; the medians of the two are rest and
+// movement, and the thresholds with hysteresis lie between them. Movements
+// parted by less than Least are one.
+func AtRest(time, data []float64, width int, groups [][]int, o Rest) (*Movements, error) {
 	n := len(time)
 	if width < 1 || len(data) != n*width {
 		panic("cut: data do not fit times and width")
@@ -88,15 +91,15 @@ func AtRest(time, data []float64, width int, columns []int, o Rest) (*Movements,
 	if n < 3 || !(time[n-1] > time[0]) {
 		return nil, &NoRest{}
 	}
-	if columns == nil {
+	if groups == nil {
+		groups = [][]int{make([]int, width)}
 		for c := range width {
-			columns = append(columns, c)
+			groups[0][c] = c
 		}
 	}
 	o = o.withDefaults()
 	rate := float64(n-1) / (time[n-1] - time[0])
-	lag := max(1, int(math.Round(o.Smoothing/2*rate)))
-	level := decibels(smooth(energy(data, width, columns, lag), int(math.Round(o.Smoothing*rate))))
+	level := levels(data, width, groups, o.Smoothing*rate)
 	m, still := thresholds(level)
 	if m.Moving < contrast {
 		return nil, &NoRest{m.Moving}
@@ -106,64 +109,6 @@ func AtRest(time, data []float64, width int, columns []int, o Rest) (*Movements,
 	}
 	m.cut(level, rate, o)
 	return m, nil
-}
-
-// energy is the mean squared change across each frame, in mean changes.
-func energy(data []float64, width int, columns []int, lag int) []float64 {
-	n := len(data) / width
-	sum, count := make([]float64, n), make([]float64, n)
-	change := make([]float64, n)
-	for _, c := range columns {
-		total, present := 0.0, 0.0
-		for i := range change {
-			from, to := max(0, i-(lag+1)/2), min(n-1, i+lag/2)
-			change[i] = data[to*width+c] - data[from*width+c]
-			if !math.IsNaN(change[i]) {
-				total, present = total+math.Abs(change[i]), present+1
-			}
-		}
-		mean := total / present
-		if !(mean > 0) || math.IsInf(mean, 0) {
-			continue // never moves, or never seen, or no size says anything
-		}
-		for i, v := range change {
-			if !math.IsNaN(v) {
-				sum[i] += v / mean * (v / mean)
-				count[i]++
-			}
-		}
-	}
-	for i := range sum {
-		sum[i] /= max(1, count[i])
-	}
-	return sum
-}
-
-// smooth averages over a centred window of this many values, made odd, and of
-// fewer at the ends.
-func smooth(values []float64, window int) []float64 {
-	before := make([]float64, len(values)+1)
-	for i, v := range values {
-		before[i+1] = before[i] + v
-	}
-	out := make([]float64, len(values))
-	for i := range out {
-		from, to := max(0, i-window/2), min(len(values), i+window/2+1)
-		out[i] = max(0, (before[to]-before[from])/float64(to-from))
-	}
-	return out
-}
-
-// decibels gives the energies relative to the highest, in place.
-func decibels(energy []float64) []float64 {
-	top := slices.Max(energy)
-	for i, e := range energy {
-		energy[i] = floor
-		if top > 0 && e > 0 {
-			energy[i] = max(floor, 10*math.Log10(e/top))
-		}
-	}
-	return energy
 }
 
 // thresholds finds the levels of rest and movement, and the thresholds between
@@ -186,6 +131,82 @@ func thresholds(level []float64) (m *Movements, still float64) {
 	still = low[len(low)/2]
 	moving := high[len(high)/2] - still
 	return &Movements{Moving: moving, Enter: enterPart * moving, Leave: leavePart * moving}, still
+}
+
+// levels is the mean energy of the groups in decibels, frame by frame, with
+// floor where none has values. Window is in frames.
+func levels(data []float64, width int, groups [][]int, window float64) []float64 {
+	n := len(data) / width
+	sum, count := make([]float64, n), make([]float64, n)
+	for _, g := range groups {
+		e := energy(data, width, g, max(1, int(math.Round(window/4))))
+		e = decibels(smooth(e, int(math.Round(window))))
+		for i, v := range e {
+			if !math.IsNaN(v) {
+				sum[i], count[i] = sum[i]+v, count[i]+1
+			}
+		}
+	}
+	for i := range sum {
+		if sum[i] /= count[i]; count[i] == 0 {
+			sum[i] = floor
+		}
+	}
+	return sum
+}
+
+// energy is the squared change of a group across each frame, over lag frames,
+// NaN where a value is missing.
+func energy(data []float64, width int, group []int, lag int) []float64 {
+	n := len(data) / width
+	out := make([]float64, n)
+	for i := range out {
+		from, to := max(0, i-(lag+1)/2), min(n-1, i+lag/2)
+		for _, c := range group {
+			change := data[to*width+c] - data[from*width+c]
+			out[i] += change * change
+		}
+	}
+	return out
+}
+
+// smooth averages what is present over a centred window of this many values,
+// made odd, and of fewer at the ends.
+func smooth(values []float64, window int) []float64 {
+	sum, count := make([]float64, len(values)+1), make([]float64, len(values)+1)
+	for i, v := range values {
+		sum[i+1], count[i+1] = sum[i], count[i]
+		if !math.IsNaN(v) && !math.IsInf(v, 0) {
+			sum[i+1], count[i+1] = sum[i]+v, count[i]+1
+		}
+	}
+	out := make([]float64, len(values))
+	for i := range out {
+		from, to := max(0, i-window/2), min(len(values), i+window/2+1)
+		out[i] = max(0, sum[to]-sum[from]) / (count[to] - count[from])
+	}
+	return out
+}
+
+// decibels gives energies relative to the highest, in place. A missing one
+// stays NaN.
+func decibels(energy []float64) []float64 {
+	top := 0.0
+	for _, e := range energy {
+		if e > top { // not for NaN
+			top = e
+		}
+	}
+	for i, e := range energy {
+		switch {
+		case math.IsNaN(e):
+		case e > 0 && top > 0:
+			energy[i] = max(floor, 10*math.Log10(e/top))
+		default:
+			energy[i] = floor
+		}
+	}
+	return energy
 }
 
 // otsu returns the level that parts the values into two classes with the

@@ -63,7 +63,7 @@ func TestAtRestFindsTheStrokes(t *testing.T) {
 			t.Fatal(err)
 		}
 		if len(m.List) != len(l.strokes) || len(m.Short) > 0 {
-			t.Fatalf("%d cuts and %d short ones of %d strokes", len(m.List), len(m.Short), len(l.strokes))
+			t.Fatalf("%d cuts and %d short ones of %d strokes at %g Hz: %+v", len(m.List), len(m.Short), len(l.strokes), l.rate, m)
 		}
 		for i, c := range m.List {
 			early, late := float64(l.strokes[i][0]-c.First)/l.rate, float64(c.End-l.strokes[i][1])/l.rate
@@ -97,7 +97,7 @@ func TestAtRestDoesNotDependOn(t *testing.T) {
 			changed = append(changed, 5)
 		}
 	}
-	got, err := cut.AtRest(l.time, changed, 4, []int{0, 1, 2, 3}, cut.Rest{})
+	got, err := cut.AtRest(l.time, changed, 4, [][]int{{0, 1, 2, 3}}, cut.Rest{})
 	if err != nil || fmt.Sprint(bounds(got.List)) != fmt.Sprint(bounds(want.List)) {
 		t.Errorf("%v, want %v; %v", got, want, err)
 	}
@@ -225,7 +225,7 @@ func TestAtRestOpenSet(t *testing.T) {
 			data = append(data, x.data...)
 			last = x.data[len(x.data)-w:]
 		}
-		m, err := cut.AtRest(uniform(0, 50, len(data)/w), data, w, nil, cut.Rest{Least: 0.6})
+		m, err := cut.AtRest(uniform(0, 50, len(data)/w), data, w, [][]int{{0, 1, 2}, {3, 4, 5}}, cut.Rest{Least: 0.6})
 		if err != nil {
 			t.Fatal(err)
 		}
