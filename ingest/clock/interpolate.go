@@ -80,11 +80,3 @@ func ulp(x float64) float64 {
 	x = math.Abs(x)
 	return math.Nextafter(x, math.Inf(1)) - x
 }
-
-// grid is a uniform clock.
-type grid struct {
-	start, step float64 // s
-	frames      int
-}
-
-func (g grid) time(k int) float64 { return g.start + float64(k)*g.step }

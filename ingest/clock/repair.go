@@ -2,7 +2,6 @@ package clock
 
 import (
 	"math"
-	"slices"
 )
 
 // Repaired is a recording on one uniform clock.
@@ -57,9 +56,14 @@ func Repair(s Series, o Options) (*Repaired, error) {
 	if err != nil {
 		return nil, err
 	}
+	j.counts.LeftOut = len(j.series.Time)
 	out := &Repaired{Rate: j.rate}
 	for _, s := range spans {
-		if g, ok := j.grid(s); ok {
+		g := j.grid(s)
+		if g.frames > manyFrames*len(j.series.Time) {
+			return nil, refuse(WrongRate, -1)
+		}
+		if g.frames > 1 {
 			out.Pieces = append(out.Pieces, j.piece(s, g))
 			j.count(s)
 		}
@@ -122,11 +126,36 @@ func (j *job) survey() error {
 			j.of[c] = i
 		}
 		j.sensors = append(j.sensors, n)
-		if n.rate > j.sensors[j.fastest].rate {
+	}
+	j.compare()
+	return j.settle()
+}
+
+// ownRate is how many frames a sensor must have for a rate of its own. Fewer
+// may as well be what is left of the fastest sensor's.
+const ownRate = 8
+
+// compare finds the fastest sensor, or where none has enough frames, that with
+// most, and gives its rate to those without one.
+func (j *job) compare() {
+	key := func(n sensor) (float64, float64) {
+		if len(n.time) < ownRate {
+			return 0, float64(len(n.time))
+		}
+		return n.rate, 0
+	}
+	for i, n := range j.sensors {
+		rate, frames := key(n)
+		best, most := key(j.sensors[j.fastest])
+		if rate > best || rate == best && frames > most {
 			j.fastest = i
 		}
 	}
-	return j.settle()
+	for i := range j.sensors {
+		if n := &j.sensors[i]; len(n.time) < ownRate {
+			n.rate, n.step = j.sensors[j.fastest].rate, j.sensors[j.fastest].step
+		}
+	}
 }
 
 // settle fixes the rate of the result and the filters it takes.
@@ -152,162 +181,4 @@ func (j *job) settle() error {
 		j.counts.Changes = append(j.counts.Changes, Change{Columns: n.Columns, From: n.rate, To: j.rate, Filtered: n.filter != nil})
 	}
 	return nil
-}
-
-// track returns the values of a column. That of a complete column shares the
-// times of the series.
-func (s ordered) track(column int) track {
-	value := make([]float64, len(s.Time))
-	n := 0
-	for row := range s.Time {
-		if value[row] = s.at(row, column); !math.IsNaN(value[row]) {
-			n++
-		}
-	}
-	if n == len(value) {
-		return track{s.Time, value, s.from}
-	}
-	t := track{make([]float64, 0, n), make([]float64, 0, n), make([]int, 0, n)}
-	for row, v := range value {
-		if !math.IsNaN(v) {
-			t.time, t.value, t.row = append(t.time, s.Time[row]), append(t.value, v), append(t.row, s.from[row])
-		}
-	}
-	return t
-}
-
-// spans finds the stretches of time in which every column has values.
-func (j *job) spans() ([]span, error) {
-	var all []hole
-	for c := range j.tracks {
-		all = append(all, holes(&j.tracks[c], c, j.sensors[j.of[c]].step, j.longest, j.whole)...)
-	}
-	out := outside(j.whole, all) // puts the holes in order
-	for _, h := range all {
-		if h.frames > j.longest && !j.options.Split {
-			return nil, &Refusal{Reason: LongGap, Row: h.row, Column: h.column, Frames: h.frames, Limit: j.longest}
-		}
-	}
-	j.counts.LeftOut = len(j.series.Time)
-	return out, nil
-}
-
-// grid lays the uniform clock through a stretch of time. It has none if fewer
-// than two frames fit.
-func (j *job) grid(s span) (grid, bool) {
-	n := j.sensors[j.fastest]
-	time := within(n.time, s)
-	start := s.from
-	if len(time) > 0 {
-		start = time[0] + n.step*median(phases(time, n.step))
-	}
-	g := grid{step: 1 / j.rate}
-	slack := min(g.step, n.step) / 2
-	first := math.Ceil((s.from - slack - start) / g.step)
-	last := math.Floor((s.to + slack - start) / g.step)
-	if last <= first {
-		return g, false
-	}
-	g.start, g.frames = start+first*g.step, int(last-first)+1
-	return g, true
-}
-
-// phases returns how far each time is from a whole number of steps after the
-// first, in steps, from −0.5 to 0.5.
-func phases(time []float64, step float64) []float64 {
-	out := make([]float64, len(time))
-	for i, t := range time {
-		n := (t - time[0]) / step
-		out[i] = n - math.Round(n)
-	}
-	return out
-}
-
-func median(values []float64) float64 {
-	return quantile(slices.Sorted(slices.Values(values)), 0.5)
-}
-
-// within returns the times in a span.
-func within(time []float64, s span) []float64 {
-	from, _ := slices.BinarySearch(time, s.from)
-	to, found := slices.BinarySearch(time, s.to)
-	if found {
-		to++
-	}
-	return time[from:to]
-}
-
-// piece samples every column on the clock.
-func (j *job) piece(s span, g grid) Piece {
-	w := j.series.Width
-	row, _ := slices.BinarySearch(j.series.Time, s.from)
-	p := Piece{Series: Series{Width: w, Time: make([]float64, g.frames), Data: make([]float64, g.frames*w)}, Row: j.series.from[row]}
-	for k := range p.Time {
-		p.Time[k] = g.time(k)
-	}
-	for c := range j.tracks {
-		t := j.tracks[c].across(s)
-		if f := j.sensors[j.of[c]].filter; f != nil {
-			t.filtered(p.Data[c:], w, g, j.options.Interpolation, f)
-			continue
-		}
-		t.sample(p.Data[c:], w, g, j.options.Interpolation)
-	}
-	return p
-}
-
-// across returns the part of a track that a span is interpolated from: from
-// the last frame at or before it to the first at or after it.
-func (t *track) across(s span) *track {
-	from, found := slices.BinarySearch(t.time, s.from)
-	if !found {
-		from--
-	}
-	to, _ := slices.BinarySearch(t.time, s.to)
-	return &track{time: t.time[from : to+1], value: t.value[from : to+1]}
-}
-
-// filtered samples the track on a faster clock first and brings it down to
-// the grid by the filter. The mean is set aside meanwhile, because the filter
-// passes a constant only to a few parts in ten thousand at some of its phases.
-func (t *track) filtered(dst []float64, stride int, g grid, how Interpolation, f *Polyphase) {
-	fast := grid{start: g.start, step: g.step * float64(f.up) / float64(f.down), frames: (g.frames-1)*f.down/f.up + 1}
-	x := make([]float64, fast.frames)
-	t.sample(x, 1, fast, how)
-	mean := 0.0
-	for _, v := range x {
-		mean += v / float64(len(x))
-	}
-	for i := range x {
-		x[i] -= mean
-	}
-	y := f.Resample(nil, x, Odd)
-	for k := range g.frames {
-		dst[k*stride] = mean + y[k]
-	}
-}
-
-// count adds what was done in a stretch of time.
-func (j *job) count(s span) {
-	j.counts.LeftOut -= len(within(j.series.Time, s))
-	for _, n := range j.sensors {
-		time := within(n.time, s)
-		if len(time) == 0 {
-			continue
-		}
-		phase := phases(time, n.step)
-		middle := median(phase)
-		for i, p := range phase {
-			if math.Abs(p-middle) > onTime {
-				j.counts.Moved++
-			}
-			if i+1 < len(time) && isGap(time, i, n.step) {
-				j.counts.Gaps++
-				j.counts.Made += between(time[i+1]-time[i], n.step)
-			}
-		}
-		for _, c := range n.Columns {
-			j.counts.Values += len(time) - len(within(j.tracks[c].time, s))
-		}
-	}
 }

@@ -58,3 +58,18 @@ func outside(whole span, holes []hole) []span {
 	}
 	return out
 }
+
+// spans finds the stretches of time in which every column has values.
+func (j *job) spans() ([]span, error) {
+	var all []hole
+	for c := range j.tracks {
+		all = append(all, holes(&j.tracks[c], c, j.sensors[j.of[c]].step, j.longest, j.whole)...)
+	}
+	out := outside(j.whole, all) // puts the holes in order
+	for _, h := range all {
+		if h.frames > j.longest && !j.options.Split {
+			return nil, &Refusal{Reason: LongGap, Row: h.row, Column: h.column, Frames: h.frames, Limit: j.longest}
+		}
+	}
+	return out, nil
+}

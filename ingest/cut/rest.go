@@ -10,7 +10,7 @@ import (
 // default, a negative value for 0.
 type Rest struct {
 	Smoothing float64 // over which the energy is averaged; 0.2
-	Least     float64 // shortest rest that parts two takes; 0.3
+	Least     float64 // shortest rest that parts two takes; 0.6
 	Take      float64 // shortest take; 0.3
 	Margin    float64 // kept of the rest on each side of a take; 0.1
 }
@@ -19,7 +19,7 @@ func (r Rest) withDefaults() Rest {
 	for _, v := range []struct {
 		field    *float64
 		standard float64
-	}{{&r.Smoothing, 0.2}, {&r.Least, 0.3}, {&r.Take, 0.3}, {&r.Margin, 0.1}} {
+	}{{&r.Smoothing, 0.2}, {&r.Least, 0.6}, {&r.Take, 0.3}, {&r.Margin, 0.1}} {
 		if *v.field == 0 {
 			*v.field = v.standard
 		}
@@ -62,7 +62,7 @@ func (e *NoRest) Error() string {
 // taken for that low.
 const (
 	enterPart = 0.5
-	leavePart = 0.35
+	leavePart = 0.25
 	contrast  = 10
 	floor     = -80
 )
@@ -71,7 +71,7 @@ const (
 // seconds, data are frame-major, and groups list the channels that are looked
 // at, those of one sensor or body part together; nil is one group of all.
 //
-// The energy of a group is its squared change across a frame, over half of
+// The energy of a group is its squared change across a frame, over a quarter of
 // Smoothing: the sum over its channels, so these must be in one unit. It is
 // averaged over Smoothing and taken in decibels below its highest; the level
 // of a frame is the mean over the groups. So units, gravity, rate and the
