@@ -17,10 +17,13 @@ import (
 // with the next take, or with the next file where the rest of one cannot be
 // made out. The error is a *UsageError.
 //
+// Step is called after each take looked at.
+//
 // Memory holds about 200 bytes for each take, and one take.
-func (r *Recordings) Check() (*Report, error) {
+func (r *Recordings) Check(step func()) (*Report, error) {
 	p := r.newPass(func(*channels.Take, error) bool { return true })
 	p.check = newChecker()
+	p.check.step = step
 	if err := p.run(); err != nil {
 		return nil, err
 	}
@@ -31,6 +34,7 @@ func (r *Recordings) Check() (*Report, error) {
 // checker collects what a pass sees. It is nil in a pass that stops at the
 // first fault.
 type checker struct {
+	step     func() // after each take
 	files    []FileReport
 	cells    map[cell]*tally
 	findings map[string]*Finding
@@ -103,6 +107,7 @@ func (c *checker) take(t *raw.Take, id raw.Identity, name string, f *frame) {
 	l.sensors()
 	l.signals(times.Step)
 	c.twice(t, id, name, file.File, f)
+	c.step()
 }
 
 // count counts one take of a label and subject: a raw one that was refused, or

@@ -27,7 +27,7 @@ grow would refuse the recordings as they are.`,
 			if err := plan.Load(file, c.Flags(), args); err != nil {
 				return err
 			}
-			report, err := plan.Check(s.In)
+			report, err := plan.Check(s.In, newBar(s))
 			if err != nil {
 				return err
 			}

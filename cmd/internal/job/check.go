@@ -7,12 +7,14 @@ import (
 )
 
 // Check reports what the plan's recordings hold and what is wrong with them.
-func (p *Plan) Check(in io.Reader) (*ingest.Report, error) {
+func (p *Plan) Check(in io.Reader, progress Progress) (*ingest.Report, error) {
 	r, err := p.open(in)
 	if err != nil {
 		return nil, err
 	}
 	defer r.Close()
-	report, err := r.Check()
+	progress.Begin("checking", -1, "takes")
+	defer progress.End()
+	report, err := r.Check(func() { progress.Step(1) })
 	return report, p.asUsage(err)
 }
