@@ -96,7 +96,7 @@ const epochAway = 1e8
 func (p *pass) atRest(pieces []piece, s source) ([]piece, error) {
 	var out []piece
 	for _, whole := range pieces {
-		m, err := cut.AtRest(whole.Time, whole.Data, len(p.r.frame.layout.Channels), nil, cut.Rest{})
+		m, err := cut.AtRest(whole.Time, whole.Data, len(p.r.frame.layout.Channels), p.r.frame.groups(), cut.Rest{})
 		var none *cut.NoRest
 		if errors.As(err, &none) {
 			return nil, &fault.Error{File: s.name, Line: whole.Line, Problem: "cannot be cut at rest: " + none.Error(), Remedy: "annotate it and name the file with --annotations, or take it whole with --cut none"}

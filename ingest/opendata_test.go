@@ -1,40 +1,15 @@
 package ingest_test
 
 import (
-	"os"
-	"path/filepath"
 	"testing"
 
 	"strandwise/ingest"
+	"strandwise/testdata/opendata"
 )
-
-// openData returns the folder of open recordings, or skips the test.
-func openData(t testing.TB) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		root, err := os.Getwd()
-		if err != nil {
-			t.Fatal(err)
-		}
-		for root != filepath.Dir(root) {
-			if _, err := os.Stat(filepath.Join(root, "go.mod")); err == nil {
-				break
-			}
-			root = filepath.Dir(root)
-		}
-		dir = filepath.Join(filepath.Dir(root), "shared", "data")
-	}
-	if _, err := os.Stat(dir); err != nil {
-		t.Skipf("the open recordings are not here: %v", err)
-	}
-	return dir
-}
 
 // TestOpenSets holds what is read against the counts published with each set
 // (UEA multivariate archive, Bagnall et al. 2018; UTD-MHAD, Chen et al. 2015).
 func TestOpenSets(t *testing.T) {
-	dir := openData(t)
 	for _, c := range []struct {
 		set                             string
 		train, test, width, least, most int
@@ -47,7 +22,7 @@ func TestOpenSets(t *testing.T) {
 		{"UTD_MHAD_inertial", 431, 430, 6, 107, 326},
 	} {
 		t.Run(c.set, func(t *testing.T) {
-			takes, _, err := read(t, ingest.Options{Paths: []string{filepath.Join(dir, "sets", c.set)}, Rate: 50})
+			takes, _, err := read(t, ingest.Options{Paths: []string{opendata.Path(t, "sets", c.set)}, Rate: 50})
 			if err != nil {
 				t.Fatal(err)
 			}

@@ -10,6 +10,8 @@ import (
 	"testing"
 
 	"github.com/google/go-cmp/cmp"
+
+	"strandwise/testdata/opendata"
 )
 
 var update = flag.Bool("update", false, "rewrite the golden files")
@@ -86,7 +88,7 @@ func TestCheckFindsTheSameRecordingInBothSplits(t *testing.T) {
 }
 
 func TestCheckOfOpenRecordings(t *testing.T) {
-	dir := filepath.Join(openData(t), "sets", "UTD_MHAD_inertial")
+	dir := opendata.Path(t, "sets", "UTD_MHAD_inertial")
 	out := must(t, "check", filepath.Join(dir, "train.csv"), filepath.Join(dir, "test.csv"), "--rate", "50", "--unit", "c0-c2=g", "--unit", "c3-c5=deg/s", "--json")
 	var got struct {
 		Labels   []struct{ Label, Subject string }

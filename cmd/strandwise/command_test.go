@@ -65,16 +65,3 @@ func contents(t *testing.T, dir string) map[string]string {
 	}
 	return out
 }
-
-// openData returns the folder of the open recordings, or skips the test.
-func openData(t *testing.T) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		dir = filepath.Join("..", "..", "..", "shared", "data")
-	}
-	if _, err := os.Stat(filepath.Join(dir, "sets")); err != nil {
-		t.Skip("skipped: the open recordings are not there; name their folder in STRANDWISE_DATA")
-	}
-	return dir
-}

@@ -4,6 +4,8 @@ import (
 	"encoding/json"
 	"path/filepath"
 	"testing"
+
+	"strandwise/testdata/opendata"
 )
 
 type scored struct {
@@ -27,7 +29,7 @@ func score(t *testing.T, args ...string) scored {
 // Information Systems 2023 (arXiv 2102.10231), for the archive's own split. The
 // whole table is held in package classify.
 func TestScoreOfOpenRecordings(t *testing.T) {
-	dir := filepath.Join(openData(t), "sets", "NATOPS")
+	dir := opendata.Path(t, "sets", "NATOPS")
 	args := []string{
 		filepath.Join(dir, "train.csv"), filepath.Join(dir, "test.csv"), "--rate", "1", "--protocol", "given",
 		"--distance", "dtw-dependent", "--normalise", "none", "--band", "1",
@@ -43,7 +45,7 @@ func TestScoreOfOpenRecordings(t *testing.T) {
 }
 
 func TestGrowOfOpenRecordings(t *testing.T) {
-	dir := filepath.Join(openData(t), "sets", "NATOPS")
+	dir := opendata.Path(t, "sets", "NATOPS")
 	set := filepath.Join(t.TempDir(), "set")
 	var got struct{ Recorded, Training, Synthetic int }
 	out := must(t, "grow", filepath.Join(dir, "train.csv"), filepath.Join(dir, "test.csv"), "--rate", "20", "--per-take", "16",

@@ -10,13 +10,14 @@ import (
 
 	"strandwise/ingest/bvh"
 	"strandwise/ingest/raw"
+	"strandwise/testdata/opendata"
 )
 
 // long returns an open file with its frames repeated to about the given number
 // of bytes.
 func long(b *testing.B, name string, size int) []byte {
 	b.Helper()
-	text, err := os.ReadFile(filepath.Join(openData(b), name))
+	text, err := os.ReadFile(filepath.Join(opendata.Path(b, "bvh"), name))
 	if err != nil {
 		b.Fatal(err)
 	}

@@ -11,6 +11,7 @@ import (
 	"strandwise/ingest/bvh"
 	"strandwise/ingest/fault"
 	"strandwise/ingest/raw"
+	"strandwise/testdata/opendata"
 )
 
 // FuzzDecode checks that no file makes the reader panic, that what it refuses
@@ -64,10 +65,8 @@ func FuzzDecode(f *testing.F) {
 
 // seeds lists the open files, none where they are absent.
 func seeds(f *testing.F) []string {
-	if os.Getenv("STRANDWISE_DATA") == "" {
-		if _, err := os.Stat("../../../shared/data/bvh"); err != nil {
-			return nil
-		}
+	if !opendata.Here(f) {
+		return nil
 	}
 	return openFiles(f)
 }

@@ -15,36 +15,13 @@ import (
 	"strandwise/channels/body"
 	"strandwise/ingest/bvh"
 	"strandwise/ingest/raw"
+	"strandwise/testdata/opendata"
 )
-
-// openData returns the folder of open BVH files, or skips the test.
-func openData(t testing.TB) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		root, err := os.Getwd()
-		if err != nil {
-			t.Fatal(err)
-		}
-		for root != filepath.Dir(root) {
-			if _, err := os.Stat(filepath.Join(root, "go.mod")); err == nil {
-				break
-			}
-			root = filepath.Dir(root)
-		}
-		dir = filepath.Join(filepath.Dir(root), "shared", "data")
-	}
-	dir = filepath.Join(dir, "bvh")
-	if _, err := os.Stat(dir); err != nil {
-		t.Skipf("the open recordings are not here: %v", err)
-	}
-	return dir
-}
 
 // openFiles lists the open BVH files.
 func openFiles(t testing.TB) []string {
 	t.Helper()
-	files, err := filepath.Glob(filepath.Join(openData(t), "*.bvh"))
+	files, err := filepath.Glob(filepath.Join(opendata.Path(t, "bvh"), "*.bvh"))
 	if err != nil || len(files) == 0 {
 		t.Fatalf("no open files: %v", err)
 	}
@@ -98,9 +75,9 @@ func TestOpenWorld(t *testing.T) {
 		Frames int
 		Joints []string
 		At     map[string][][3]float64
-	}](t, filepath.Join(openData(t), "world.jsonl")) {
+	}](t, filepath.Join(opendata.Path(t, "bvh"), "world.jsonl")) {
 		t.Run(want.File, func(t *testing.T) {
-			m := decodeFile(t, filepath.Join(openData(t), want.File), "m")
+			m := decodeFile(t, filepath.Join(opendata.Path(t, "bvh"), want.File), "m")
 			if m.Frames() != want.Frames {
 				t.Errorf("%d frames, want %d", m.Frames(), want.Frames)
 			}
@@ -150,9 +127,9 @@ func TestOpenInfo(t *testing.T) {
 			Frames, Channels int
 			FrameTime        float64
 		}
-	}](t, filepath.Join(openData(t), "info.jsonl")) {
+	}](t, filepath.Join(opendata.Path(t, "bvh"), "info.jsonl")) {
 		t.Run(want.File, func(t *testing.T) {
-			m := decodeFile(t, filepath.Join(openData(t), want.File), "")
+			m := decodeFile(t, filepath.Join(opendata.Path(t, "bvh"), want.File), "")
 			ends, columns := 0, 0
 			for _, j := range m.Skeleton.Joints {
 				columns += len(j.Freedoms)

@@ -10,31 +10,8 @@ import (
 	"testing"
 
 	"strandwise/ingest/c3d"
+	"strandwise/testdata/opendata"
 )
-
-// openData returns the folder of open C3D recordings, or skips the test.
-func openData(t testing.TB) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		root, err := os.Getwd()
-		if err != nil {
-			t.Fatal(err)
-		}
-		for root != filepath.Dir(root) {
-			if _, err := os.Stat(filepath.Join(root, "go.mod")); err == nil {
-				break
-			}
-			root = filepath.Dir(root)
-		}
-		dir = filepath.Join(filepath.Dir(root), "shared", "data")
-	}
-	dir = filepath.Join(dir, "c3d")
-	if _, err := os.Stat(dir); err != nil {
-		t.Skipf("the open recordings are not here: %v", err)
-	}
-	return dir
-}
 
 // fact is what independent readers found in an open recording (py-c3d, MIT,
 // and a second one that reads the bytes as they stand).
@@ -84,7 +61,7 @@ func facts(t testing.TB, dir string) []fact {
 }
 
 func TestOpenRecordings(t *testing.T) {
-	dir := openData(t)
+	dir := opendata.Path(t, "c3d")
 	for _, want := range facts(t, dir) {
 		t.Run(want.File, func(t *testing.T) {
 			data, err := os.ReadFile(filepath.Join(dir, want.File))

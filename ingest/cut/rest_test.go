@@ -9,7 +9,9 @@ import (
 
 	"pgregory.net/rapid"
 
+	"strandwise/channels"
 	"strandwise/ingest/cut"
+	"strandwise/testdata/opendata"
 )
 
 // log is an invented recording of three position channels in metres at a rate:
@@ -203,27 +205,28 @@ func TestAtRestWithoutRest(t *testing.T) {
 // The takes of an open set (Chen et al., ICIP 2015), each person's in a row
 // with a second of rest between them, fall apart into those takes again.
 func TestAtRestOpenSet(t *testing.T) {
-	takes, w := set(t, "UTD_MHAD_inertial")
+	takes := opendata.Set(t, "UTD_MHAD_inertial")
+	w := takes[0].Width()
 	random := rand.New(rand.NewPCG(1, 2))
-	people := map[string][]take{}
+	people := map[string][]*channels.Take{}
 	for _, x := range takes {
-		people[x.subject] = append(people[x.subject], x)
+		people[x.Subject] = append(people[x.Subject], x)
 	}
 	once, all := 0, 0
 	for _, list := range people {
 		var data []float64
 		var where [][2]int
-		last := list[0].data[:w]
+		last := list[0].Data[:w]
 		for _, x := range list {
 			for i := range 50 {
-				for c, v := range x.data[:w] {
+				for c, v := range x.Data[:w] {
 					noise := []float64{0.005, 0.5}[c/3] // g, deg/s
 					data = append(data, last[c]+(v-last[c])*float64(i)/50+noise*random.NormFloat64())
 				}
 			}
-			where = append(where, [2]int{len(data) / w, (len(data) + len(x.data)) / w})
-			data = append(data, x.data...)
-			last = x.data[len(x.data)-w:]
+			where = append(where, [2]int{len(data) / w, (len(data) + len(x.Data)) / w})
+			data = append(data, x.Data...)
+			last = x.Data[len(x.Data)-w:]
 		}
 		m, err := cut.AtRest(uniform(0, 50, len(data)/w), data, w, [][]int{{0, 1, 2}, {3, 4, 5}}, cut.Rest{})
 		if err != nil {

@@ -12,6 +12,7 @@ import (
 
 	"strandwise/channels"
 	"strandwise/ingest/signal"
+	"strandwise/testdata/opendata"
 )
 
 // columns puts series side by side.
@@ -165,15 +166,16 @@ func TestClippingOpenSets(t *testing.T) {
 	}
 	for _, name := range []string{"BasicMotions", "Epilepsy", "Libras", "NATOPS", "UWaveGestureLibrary", "UTD_MHAD_inertial"} {
 		for _, factor := range []float64{1, channels.StandardGravity} {
-			takes, width := set(t, name)
+			takes := opendata.Set(t, name)
+			width := takes[0].Width()
 			all, single := signal.NewClipping(width, groups[width]), 0
 			for _, x := range takes {
-				for i := range x.data {
-					x.data[i] *= factor
+				for i := range x.Data {
+					x.Data[i] *= factor
 				}
-				all.Add(x.data)
+				all.Add(x.Data)
 				one := signal.NewClipping(width, groups[width])
-				if one.Add(x.data); len(one.Findings()) > 0 {
+				if one.Add(x.Data); len(one.Findings()) > 0 {
 					single++
 				}
 			}

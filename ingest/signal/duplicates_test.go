@@ -10,6 +10,7 @@ import (
 	"pgregory.net/rapid"
 
 	"strandwise/ingest/signal"
+	"strandwise/testdata/opendata"
 )
 
 // same is the plain rule: as many values, none further apart than rounding to
@@ -47,14 +48,15 @@ func deviation(data []float64, width int) float64 {
 // those of a comparison of all values with all.
 func TestDuplicatesOpenSets(t *testing.T) {
 	for name, again := range map[string]int{"BasicMotions": 0, "Epilepsy": 1, "Libras": 30, "NATOPS": 0, "UWaveGestureLibrary": 0, "UTD_MHAD_inertial": 0} {
-		takes, width := set(t, name)
+		takes := opendata.Set(t, name)
+		width := takes[0].Width()
 		var d signal.Duplicates
 		found := 0
 		for i, x := range takes {
-			ref, ok := d.Add(uint64(i), x.data, width)
+			ref, ok := d.Add(uint64(i), x.Data, width)
 			want := -1
 			for j := i - 1; j >= 0; j-- {
-				if same(takes[j].data, x.data) {
+				if same(takes[j].Data, x.Data) {
 					want = j
 				}
 			}
@@ -62,17 +64,17 @@ func TestDuplicatesOpenSets(t *testing.T) {
 				found++
 			}
 			if ok != (want >= 0) || ok && int(ref) != want {
-				t.Errorf("%s: take %s is found to be take %d: %v; it is %d", name, x.name, ref, ok, want)
+				t.Errorf("%s: take %s is found to be take %d: %v; it is %d", name, x.ID, ref, ok, want)
 			}
 		}
 		flat := 0
 		for i, x := range takes {
-			if deviation(x.data, width) < 30e-4 { // said to be too flat for this
+			if deviation(x.Data, width) < 30e-4 { // said to be too flat for this
 				flat++
 				continue
 			}
-			ref, ok := d.Add(math.MaxUint64, rounded(x.data, 1e-4), width)
-			if !ok || !same(takes[ref].data, rounded(x.data, 1e-4)) {
+			ref, ok := d.Add(math.MaxUint64, rounded(x.Data, 1e-4), width)
+			if !ok || !same(takes[ref].Data, rounded(x.Data, 1e-4)) {
 				t.Errorf("%s: the rounded copy of take %d is found to be take %d: %v", name, i, ref, ok)
 			}
 		}

@@ -13,6 +13,7 @@ import (
 
 	"strandwise/channels"
 	"strandwise/ingest/signal"
+	"strandwise/testdata/opendata"
 )
 
 func TestMissing(t *testing.T) {
@@ -106,10 +107,11 @@ func TestSpikes(t *testing.T) {
 // set; those of NATOPS are single joints that jump for one frame.
 func TestSpikesOpenSets(t *testing.T) {
 	for name, most := range map[string]int{"BasicMotions": 2, "Epilepsy": 0, "Libras": 0, "NATOPS": 9, "UWaveGestureLibrary": 0, "UTD_MHAD_inertial": 27} {
-		takes, width := set(t, name)
+		takes := opendata.Set(t, name)
+		width := takes[0].Width()
 		found := 0
 		for _, x := range takes {
-			found += len(signal.Spikes(x.data, width))
+			found += len(signal.Spikes(x.Data, width))
 		}
 		t.Logf("%s: %d channels of %d takes", name, found, len(takes))
 		if found > most {
@@ -231,13 +233,14 @@ func TestJudgeOpenSets(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		takes, width := set(t, c.set)
+		takes := opendata.Set(t, c.set)
+		width := takes[0].Width()
 		v := signal.Verdicts{}
 		for _, x := range takes {
-			for i := range x.data {
-				x.data[i] *= c.factor
+			for i := range x.Data {
+				x.Data[i] *= c.factor
 			}
-			if rest, ok := signal.AtRest(x.data, width, [3]int{0, 1, 2}, 12); ok {
+			if rest, ok := signal.AtRest(x.Data, width, [3]int{0, 1, 2}, 12); ok {
 				v[signal.Judge(rest, unit)]++
 			}
 		}
