@@ -6,6 +6,7 @@ import (
 	"strandwise/ingest/bids"
 	"strandwise/ingest/bvh"
 	"strandwise/ingest/c3d"
+	"strandwise/ingest/columnar"
 	"strandwise/ingest/delimited"
 	"strandwise/ingest/raw"
 )
@@ -17,6 +18,7 @@ func (o *Options) formats() []raw.Format {
 		bids.Format{},
 		bvh.Format{LengthUnit: o.LengthUnit},
 		c3d.Format{Stream: o.Stream},
+		columnar.Format{},
 		delimited.Format{},
 	}
 }
@@ -44,8 +46,6 @@ func (o *Options) formatOf(head []byte, name string) raw.Format {
 // magics names well-known kinds of file that hold no recordings for us, by
 // their first bytes (each format's own specification).
 var magics = []struct{ head, kind string }{
-	{"PAR1", "a Parquet file"},
-	{"ARROW1", "an Arrow file"},
 	{"\x89PNG", "a PNG image"},
 	{"\xff\xd8\xff", "a JPEG image"},
 	{"PK\x03\x04", "a zip archive (or an office document)"},
