@@ -87,13 +87,13 @@ func TestForeign(t *testing.T) {
 		{"text", "t,ax\n0,1\n", "f: is neither Parquet nor Arrow"},
 		{"encrypted", "PARE....PARE", "f: is an encrypted Parquet file"},
 		{"feather", "FEA1....FEA1", "f: is a Feather file of version 1"},
-		{"magic alone", "PAR1", "f: is damaged or cut short"},
-		{"magic twice", "PAR1\x00\x00\x00\x00PAR1", "f: is damaged or cut short"},
-		{"footer of gigabytes", "PAR1\xff\xff\xff\x7fPAR1", "f: is damaged or cut short"},
-		{"arrow magic alone", "ARROW1\x00\x00", "f: is damaged or cut short"},
-		{"message of gigabytes", "\xff\xff\xff\xff\x00\x00\x00\x0f", "f: is damaged or cut short"},
-		{"message of zeros", "\xff\xff\xff\xff\x40\x00\x00\x00" + strings.Repeat("\x00", 64), "f: is damaged or cut short"},
-		{"end at the start", "\xff\xff\xff\xff\x00\x00\x00\x00", "f: is damaged or cut short"},
+		{"magic alone", "PAR1", "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"magic twice", "PAR1\x00\x00\x00\x00PAR1", "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"footer of gigabytes", "PAR1\xff\xff\xff\x7fPAR1", "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"arrow magic alone", "ARROW1\x00\x00", "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"message of gigabytes", "\xff\xff\xff\xff\x00\x00\x00\x0f", "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"message of zeros", "\xff\xff\xff\xff\x40\x00\x00\x00" + strings.Repeat("\x00", 64), "f: is a Parquet or Arrow file that is damaged or cut short"},
+		{"end at the start", "\xff\xff\xff\xff\x00\x00\x00\x00", "f: is a Parquet or Arrow file that is damaged or cut short"},
 	}
 	for _, c := range cases {
 		t.Run(c.name, func(t *testing.T) { checkFault(t, []byte(c.data), c.want) })

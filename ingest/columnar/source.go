@@ -108,5 +108,5 @@ func damaged(in raw.Input, err error) error {
 	case errors.As(err, &known):
 		return known
 	}
-	return &fault.Error{File: in.Name, Problem: "is damaged or cut short", Err: err, Remedy: "copy or write it again"}
+	return &fault.Error{File: in.Name, Problem: "is a Parquet or Arrow file that is damaged or cut short", Err: err, Remedy: "copy or write it again"}
 }
