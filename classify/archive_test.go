@@ -1,107 +1,15 @@
 package classify_test
 
 import (
-	"encoding/csv"
 	"fmt"
-	"io"
 	"math"
-	"os"
-	"path/filepath"
-	"strconv"
-	"strings"
 	"testing"
 	"time"
 
-	"strandwise/channels"
 	"strandwise/classify"
 	"strandwise/classify/template"
+	"strandwise/testdata/opendata"
 )
-
-// openData returns the folder of the open recordings, or skips the test.
-func openData(t *testing.T) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		root, err := os.Getwd()
-		if err != nil {
-			t.Fatal(err)
-		}
-		for {
-			if _, err := os.Stat(filepath.Join(root, "go.mod")); err == nil || root == filepath.Dir(root) {
-				break
-			}
-			root = filepath.Dir(root)
-		}
-		dir = filepath.Join(root, "..", "shared", "data")
-	}
-	if _, err := os.Stat(filepath.Join(dir, "sets")); err != nil {
-		t.Skipf("the open recordings are absent: set STRANDWISE_DATA to their folder (%v)", err)
-	}
-	return dir
-}
-
-// readSet reads both splits of an open set: long CSV files with the columns
-// take, label, subject, split, frame and one per channel. Frames count as
-// seconds.
-func readSet(t *testing.T, name string) []*channels.Take {
-	t.Helper()
-	dir := filepath.Join(openData(t), "sets", name)
-	var takes []*channels.Take
-	for _, part := range []string{"train.csv", "test.csv"} {
-		file, err := os.Open(filepath.Join(dir, part))
-		if err != nil {
-			t.Fatal(err)
-		}
-		takes, err = appendTakes(takes, file)
-		file.Close()
-		if err != nil {
-			t.Fatalf("%s: %v", part, err)
-		}
-	}
-	return takes
-}
-
-func appendTakes(takes []*channels.Take, from io.Reader) ([]*channels.Take, error) {
-	r := csv.NewReader(from)
-	r.ReuseRecord = true
-	header, err := r.Read()
-	if err != nil {
-		return nil, err
-	}
-	const first = 5 // columns before the channels
-	layout := &channels.Layout{}
-	if len(takes) > 0 {
-		layout = takes[0].Layout
-	} else {
-		for _, name := range header[first:] {
-			layout.Channels = append(layout.Channels, channels.Channel{Name: strings.Clone(name), Quantity: channels.Misc})
-		}
-	}
-	for {
-		row, err := r.Read()
-		if err == io.EOF {
-			return takes, nil
-		}
-		if err != nil {
-			return nil, err
-		}
-		if len(takes) == 0 || takes[len(takes)-1].ID != row[0] {
-			takes = append(takes, &channels.Take{
-				ID: strings.Clone(row[0]), Label: strings.Clone(row[1]), Subject: strings.Clone(row[2]),
-				Split: channels.Split(strings.Clone(row[3])), Layout: layout,
-			})
-		}
-		take := takes[len(takes)-1]
-		take.Time = append(take.Time, float64(len(take.Time)))
-		for _, field := range row[first:] {
-			v, err := strconv.ParseFloat(field, 64)
-			if err != nil {
-				return nil, err
-			}
-			take.Data = append(take.Data, v)
-		}
-	}
-}
 
 // archive is the published accuracy of a nearest template on the splits of the
 // archive, in the order of archiveDistances. Source: Shifaz, Pelletier,
@@ -136,7 +44,7 @@ func TestArchive(t *testing.T) {
 			if testing.Short() && a.set != "BasicMotions" && a.set != "Libras" {
 				t.Skip("long: left out under -short")
 			}
-			takes := readSet(t, a.set)
+			takes := opendata.Set(t, a.set)
 			for i, d := range archiveDistances {
 				start := time.Now()
 				r, err := classify.Score(t.Context(), takes, nil, classify.Options{

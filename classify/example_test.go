@@ -61,5 +61,5 @@ func ExampleScore() {
 	// Output:
 	// recorded           3 of 6 wrong
 	// recorded+synthetic 1 of 6 wrong
-	// No difference shown: with euclidean-dependent, 3 errors in 6 tests become 1 (error 16.7 %, 95 % interval 3.0 to 56.4 %, p = 0.5).
+	// No difference shown: with euclidean-dependent, 3 errors in 6 tests become 1 (reduction 66.7 %, 95 % interval -5.9 to 100.0 %, p = 0.5).
 }

@@ -33,7 +33,7 @@ func theatre(labels, subjects, takesEach int, spread float64) []*channels.Take {
 			for k := range takesEach {
 				t := &channels.Take{
 					ID: fmt.Sprintf("cue%d_puppeteer%d_%d", l, s, k), Label: fmt.Sprintf("cue%d", l),
-					Subject: fmt.Sprintf("puppeteer%d", s), Layout: layout,
+					Subject: fmt.Sprintf("puppeteer%d", s), Session: fmt.Sprintf("evening%d", k%3), Layout: layout,
 				}
 				for i := range frames {
 					t.Time = append(t.Time, float64(i)/50)
@@ -86,4 +86,15 @@ func mustScore(t *testing.T, takes []*channels.Take, fit classify.Fit, o classif
 		t.Fatal(err)
 	}
 	return r
+}
+
+// withResults returns the results of one origin.
+func withResults(r *classify.Report, origin string) []classify.Result {
+	var out []classify.Result
+	for _, x := range r.Results {
+		if x.Origin == origin {
+			out = append(out, x)
+		}
+	}
+	return out
 }

@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"errors"
 	"fmt"
+	"math"
 	"math/rand/v2"
 	"slices"
 	"strings"
@@ -15,35 +16,9 @@ import (
 // of those that are tested, both ascending. No take is in both.
 type fold struct {
 	training, test []int
-}
-
-// protocol returns the protocol to use for the takes.
-func (o Options) protocol(takes []*channels.Take) Protocol {
-	if o.Protocol != Auto {
-		return o.Protocol
-	}
-	if slices.ContainsFunc(takes, func(t *channels.Take) bool { return t.Split == channels.Test }) {
-		return Given
-	}
-	all := !slices.ContainsFunc(takes, func(t *channels.Take) bool { return t.Subject == "" })
-	if all && len(distinct(takes, subjectOf)) >= 3 {
-		return Subject
-	}
-	return Pooled
-}
-
-// folds returns the splits of the protocol, which is not Auto.
-func (o Options) folds(takes []*channels.Take) ([]fold, error) {
-	if o.Protocol == Pooled {
-		return pooledFolds(takes, o)
-	}
-	if o.TakesPerLabel > 0 || o.Repeats > 0 {
-		return nil, fmt.Errorf("protocol %s draws nothing at random: training takes per label and repeats go with protocol pooled only", o.Protocol)
-	}
-	if o.Protocol == Given {
-		return givenFold(takes)
-	}
-	return subjectFolds(takes)
+	k              int // which of the options' takes per label it has
+	split          int // the same for the folds of one draw that differ in k alone
+	repeat         int
 }
 
 func givenFold(takes []*channels.Take) ([]fold, error) {
@@ -55,31 +30,6 @@ func givenFold(takes []*channels.Take) ([]fold, error) {
 		return nil, errors.New("protocol given: every take is of the test split; mark takes with split train, or use protocol subject or pooled")
 	}
 	return []fold{f}, nil
-}
-
-func subjectFolds(takes []*channels.Take) ([]fold, error) {
-	for _, t := range takes {
-		if t.Subject == "" {
-			return nil, fmt.Errorf("protocol subject: take %s%s names no subject; name one for every take, or use protocol given or pooled", t.ID, from(t))
-		}
-	}
-	subjects := distinct(takes, subjectOf)
-	if len(subjects) < 2 {
-		return nil, fmt.Errorf("protocol subject: every take is by %s; leaving a subject out needs two or more; use protocol given or pooled", subjects[0])
-	}
-	folds := make([]fold, len(subjects))
-	for i, s := range subjects {
-		folds[i] = divide(takes, func(t *channels.Take) bool { return t.Subject == s })
-	}
-	return folds, nil
-}
-
-// from says where a take comes from, for messages.
-func from(t *channels.Take) string {
-	if t.Where == "" {
-		return ""
-	}
-	return " (" + t.Where + ")"
 }
 
 // divide returns the fold in which the takes that tested says yes to are
@@ -96,44 +46,134 @@ func divide(takes []*channels.Take, tested func(*channels.Take) bool) fold {
 	return f
 }
 
-// defaultRepeats is the number of splits the pooled protocol draws when none
-// is asked for.
+// defaultRepeats is the number of splits drawn at random when none is asked
+// for.
 const defaultRepeats = 10
 
-// pooledFolds draws the folds. Repeat r draws from a generator keyed by the
-// seed and r alone.
-func pooledFolds(takes []*channels.Take, o Options) ([]fold, error) {
-	pools := byLabel(takes)
-	if err := checkPools(takes, pools, o.TakesPerLabel); err != nil {
+// leaveOut returns the folds in which the takes of one subject, or of whatever
+// the property says, are tested, or those of a share of them drawn at random.
+func (o Options) leaveOut(takes []*channels.Take, name string, property func(*channels.Take) string) ([]fold, error) {
+	for _, t := range takes {
+		if property(t) == "" {
+			return nil, fmt.Errorf("protocol %s: take %s%s names no %s; name one for every take, or use protocol given or pooled", name, t.ID, from(t), name)
+		}
+	}
+	all := distinct(takes, property)
+	if len(all) < 2 {
+		return nil, fmt.Errorf("protocol %s: every take is by %s; leaving a %s out needs two or more; use protocol given or pooled", name, all[0], name)
+	}
+	if o.Repeats > 0 && o.TestShare == 0 && len(o.TakesPerLabel) == 0 {
+		return nil, fmt.Errorf("protocol %s draws nothing at random: repeats go with a share to leave out, with training takes per label, or with protocol pooled", name)
+	}
+	var folds []fold
+	for r := range o.repeats() {
+		for _, out := range o.left(all, r) {
+			f := divide(takes, func(t *channels.Take) bool { return slices.Contains(out, property(t)) })
+			f.repeat = r
+			folds = o.thin(folds, f, takes)
+		}
+	}
+	return folds, nil
+}
+
+// repeats returns how often everything is drawn.
+func (o Options) repeats() int {
+	if o.Protocol == Pooled || o.TestShare > 0 {
+		return cmp.Or(o.Repeats, defaultRepeats)
+	}
+	return cmp.Or(o.Repeats, 1)
+}
+
+// left returns whom to leave out of repeat r, split by split.
+func (o Options) left(all []string, r int) [][]string {
+	if o.TestShare == 0 {
+		return slices.Collect(slices.Chunk(all, 1))
+	}
+	g := rand.New(rand.NewPCG(o.Seed, uint64(r)))
+	n := min(max(1, int(math.Round(o.TestShare*float64(len(all))))), len(all)-1)
+	var out []string
+	for _, i := range g.Perm(len(all))[:n] {
+		out = append(out, all[i])
+	}
+	return [][]string{out}
+}
+
+// thinning keeps the draws of training takes apart from those of splits.
+const thinning = 1 << 32
+
+// thin appends the fold, once for each number of takes per label, with as many
+// training takes of each label drawn at random, or all where there are fewer.
+// The smaller draws are parts of the larger ones.
+func (o Options) thin(folds []fold, f fold, takes []*channels.Take) []fold {
+	if len(folds) > 0 {
+		f.split = folds[len(folds)-1].split + 1
+	}
+	if len(o.TakesPerLabel) == 0 {
+		return append(folds, f)
+	}
+	g := rand.New(rand.NewPCG(o.Seed, thinning+uint64(f.split)))
+	pools := shuffled(byLabel(takes, f.training), g)
+	for i, k := range o.TakesPerLabel {
+		thinned := f
+		thinned.k, thinned.training = i, nil
+		for _, pool := range pools {
+			thinned.training = append(thinned.training, pool[:min(share(k, pool), len(pool))]...)
+		}
+		slices.Sort(thinned.training)
+		folds = append(folds, thinned)
+	}
+	return folds
+}
+
+// share returns k, or for 0 half of what the pool has, at least one.
+func share(k int, pool []int) int { return cmp.Or(k, max(1, len(pool)/2)) }
+
+// shuffled returns the pools with each in random order.
+func shuffled(pools [][]int, g *rand.Rand) [][]int {
+	for i, pool := range pools {
+		drawn := make([]int, len(pool))
+		for j, p := range g.Perm(len(pool)) {
+			drawn[j] = pool[p]
+		}
+		pools[i] = drawn
+	}
+	return pools
+}
+
+// pooled draws the folds of protocol pooled. Repeat r draws from a generator
+// keyed by the seed and r alone; its training takes for a smaller number per
+// label are among those for a larger one.
+func (o Options) pooled(takes []*channels.Take) ([]fold, error) {
+	list := o.TakesPerLabel
+	if len(list) == 0 {
+		list = []int{0}
+	}
+	if err := checkPools(takes, slices.Max(list)); err != nil {
 		return nil, err
 	}
-	folds := make([]fold, cmp.Or(o.Repeats, defaultRepeats))
-	for r := range folds {
-		g := rand.New(rand.NewPCG(o.Seed, uint64(r)))
-		for _, pool := range pools {
-			k := o.TakesPerLabel
-			if k == 0 {
-				k = max(1, len(pool)/2)
+	var folds []fold
+	for r := range o.repeats() {
+		pools := shuffled(byLabel(takes, nil), rand.New(rand.NewPCG(o.Seed, uint64(r))))
+		for i, k := range list {
+			f := fold{k: i, split: r, repeat: r}
+			for _, pool := range pools {
+				n := share(k, pool)
+				f.training = append(f.training, pool[:n]...)
+				f.test = append(f.test, pool[n:]...)
 			}
-			for i, p := range g.Perm(len(pool)) {
-				if i < k {
-					folds[r].training = append(folds[r].training, pool[p])
-				} else {
-					folds[r].test = append(folds[r].test, pool[p])
-				}
-			}
+			slices.Sort(f.training)
+			slices.Sort(f.test)
+			folds = append(folds, f)
 		}
-		slices.Sort(folds[r].training)
-		slices.Sort(folds[r].test)
 	}
 	return folds, nil
 }
 
 // checkPools reports labels that have too few takes to train k and test one.
-func checkPools(takes []*channels.Take, pools [][]int, k int) error {
+func checkPools(takes []*channels.Take, k int) error {
 	most := 0
 	var short []string
-	for _, pool := range pools {
+	for _, pool := range byLabel(takes, nil) {
 		most = max(most, len(pool))
 		if len(pool) <= k {
 			short = append(short, fmt.Sprintf("%s (%d)", takes[pool[0]].Label, len(pool)))
@@ -149,28 +189,22 @@ func checkPools(takes []*channels.Take, pools [][]int, k int) error {
 }
 
 // byLabel returns the places of the takes of each label, in order of the
-// label's name.
-func byLabel(takes []*channels.Take) [][]int {
-	places := make(map[string][]int)
-	for i, t := range takes {
-		places[t.Label] = append(places[t.Label], i)
+// label's name: all takes, or those at the given places.
+func byLabel(takes []*channels.Take, places []int) [][]int {
+	pools := make(map[string][]int)
+	if places == nil {
+		for i := range takes {
+			places = append(places, i)
+		}
 	}
-	out := make([][]int, 0, len(places))
+	for _, i := range places {
+		pools[takes[i].Label] = append(pools[takes[i].Label], i)
+	}
+	out := make([][]int, 0, len(pools))
 	for _, l := range distinct(takes, labelOf) {
-		out = append(out, places[l])
+		if len(pools[l]) > 0 {
+			out = append(out, pools[l])
+		}
 	}
 	return out
-}
-
-func labelOf(t *channels.Take) string   { return t.Label }
-func subjectOf(t *channels.Take) string { return t.Subject }
-
-// distinct returns the different values of a property, sorted.
-func distinct(takes []*channels.Take, property func(*channels.Take) string) []string {
-	values := make([]string, len(takes))
-	for i, t := range takes {
-		values[i] = property(t)
-	}
-	slices.Sort(values)
-	return slices.Compact(values)
 }

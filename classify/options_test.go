@@ -15,9 +15,9 @@ func TestParseProtocol(t *testing.T) {
 			t.Errorf("ParseProtocol(%q) = %q, %v", p, got, err)
 		}
 	}
-	_, err := classify.ParseProtocol("session")
-	if want := `unknown protocol "session"; legal protocols are given, subject, pooled`; err == nil || err.Error() != want {
-		t.Errorf("ParseProtocol(session): %v, want %s", err, want)
+	_, err := classify.ParseProtocol("evening")
+	if want := `unknown protocol "evening"; legal protocols are given, subject, session, pooled`; err == nil || err.Error() != want {
+		t.Errorf("ParseProtocol(evening): %v, want %s", err, want)
 	}
 }
 
@@ -41,7 +41,7 @@ func TestAutomaticProtocol(t *testing.T) {
 
 func TestOptionFaults(t *testing.T) {
 	err := classify.Options{
-		Protocol: "odd", Distances: []template.Distance{"far"}, Band: 2, PerTake: -1, TakesPerLabel: -2, Repeats: -3, Workers: -4,
+		Protocol: "odd", Distances: []template.Distance{"far"}, Band: 2, PerTake: -1, TakesPerLabel: []int{-2}, Repeats: -3, Workers: -4,
 	}.Validate()
 	for _, text := range []string{`"odd"`, `"far"`, "recorded one: -1", "per label: -2", "repeats: -3", "workers: -4"} {
 		if err == nil || !strings.Contains(err.Error(), text) {
@@ -88,7 +88,7 @@ func TestScoreRefuses(t *testing.T) {
 		"nothing trains":    {all(channels.Test), classify.Options{}, "every take is of the test split"},
 		"one subject":       {theatre(2, 1, 2, 0.1), classify.Options{Protocol: classify.Subject}, "every take is by puppeteer0"},
 		"no subject":        {one(func(t *channels.Take) { t.Subject = "" }), classify.Options{Protocol: classify.Subject}, "(evening.csv:120) names no subject"},
-		"none left to test": {theatre(2, 2, 2, 0.1), classify.Options{Protocol: classify.Pooled, TakesPerLabel: 4}, "none to test of cue0 (4), cue1 (4)"},
+		"none left to test": {theatre(2, 2, 2, 0.1), classify.Options{Protocol: classify.Pooled, TakesPerLabel: []int{4}}, "none to test of cue0 (4), cue1 (4)"},
 		"one take each":     {theatre(3, 1, 1, 0.1), classify.Options{}, "every label has one take"},
 		"repeats":           {theatre(2, 3, 2, 0.1), classify.Options{Repeats: 3}, "protocol subject draws nothing at random"},
 		"options":           {theatre(2, 3, 2, 0.1), classify.Options{Workers: -1}, "workers: -1"},

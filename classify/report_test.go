@@ -12,6 +12,7 @@ import (
 
 	"strandwise/channels"
 	"strandwise/classify"
+	"strandwise/classify/convolution"
 	"strandwise/classify/statistic"
 	"strandwise/classify/template"
 )
@@ -24,9 +25,16 @@ var update = flag.Bool("update", false, "rewrite the golden files")
 //	go test ./classify -run ReportJSON -update
 func TestReportJSON(t *testing.T) {
 	const golden = "testdata/report.json"
-	r := mustScore(t, theatre(3, 3, 6, 2), fitted(jitter{1}), classify.Options{
-		Protocol: classify.Pooled, PerTake: 8, Method: "jitter", TakesPerLabel: 2, Repeats: 4, Seed: 7, Normalise: template.ZScore, Band: 0.25,
-	})
+	r, err := classify.Compare(t.Context(), theatre(3, 3, 6, 2), []classify.Method{
+		{Name: "jitter", Fit: fitted(jitter{1})}, {Name: "strong jitter", Fit: fitted(jitter{3})},
+	}, classify.Options{
+		Protocol: classify.Pooled, TakesPerLabel: []int{2}, Repeats: 6, Seed: 7, PerTake: 8, Curve: []int{0, 4}, Reject: true,
+		Distances: []template.Distance{template.DTWDependent}, Normalise: template.ZScore, Band: 0.25,
+		Learners: []classify.Learner{classify.Convolution(convolution.Options{Kernels: 20, Length: 12}, convolution.Ridge{}, 7)},
+	}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
 	got, err := json.MarshalIndent(r, "", "  ")
 	if err != nil {
 		t.Fatal(err)
@@ -65,6 +73,18 @@ func TestReportAddsUp(t *testing.T) {
 		if tested != x.Tested || errs != x.Errors || x.Tested != 48 || x.Takes != 48 {
 			t.Errorf("%s, %s: %d errors of %d by label, %d of %d in all", x.Distance, x.Origin, errs, tested, x.Errors, x.Tested)
 		}
+		seen, right := 0, 0
+		for i, row := range x.Confusion {
+			for j, n := range row {
+				seen += n
+				if i == j {
+					right += n
+				}
+			}
+		}
+		if seen != x.Tested || right != x.Tested-x.Errors {
+			t.Errorf("%s, %s: the confusion matrix holds %d tests, %d of them right, want %d and %d", x.Distance, x.Origin, seen, right, x.Tested, x.Tested-x.Errors)
+		}
 		if x.Low > x.Error || x.High < x.Error || x.Accuracy+x.Error < 0.9999 || x.Accuracy+x.Error > 1.0001 {
 			t.Errorf("%s, %s: accuracy %g, error %g in %g to %g", x.Distance, x.Origin, x.Accuracy, x.Error, x.Low, x.High)
 		}
@@ -75,6 +95,12 @@ func TestReportAddsUp(t *testing.T) {
 			}
 			if p := statistic.McNemar(*x.Helped, *x.Hurt); *x.P < 0.999*p || *x.P > 1.001*p {
 				t.Errorf("%s: p %g, want %g", x.Distance, *x.P, p)
+			}
+			if !(*x.ReductionLow <= *x.Reduction && *x.Reduction <= *x.ReductionHigh) {
+				t.Errorf("%s: reduction %g in %g to %g", x.Distance, *x.Reduction, *x.ReductionLow, *x.ReductionHigh)
+			}
+			if o := r.Overall[i/2]; o.Recorded != before.Errors || o.Errors != x.Errors || *o.P != *x.P || o.Finding != x.Finding {
+				t.Errorf("%s: overall %+v of one number of takes per label, result %+v", x.Distance, o, x)
 			}
 		}
 	}
@@ -117,9 +143,9 @@ func TestVerdict(t *testing.T) {
 		fit  classify.Fit
 		want string
 	}{
-		{mirror(takes, true), "Synthetic takes help: with euclidean-dependent, 14 errors in 24 tests become 0 (error 0.0 %, 95 % interval 0.0 to 13.8 %, p = 0.00012); synthetic takes help with dtw-dependent, "},
-		{mirror(takes, false), "Synthetic takes hurt: with euclidean-dependent, 14 errors in 24 tests become 24 (error 100.0 %, 95 % interval 86.2 to 100.0 %, p = 0.002); synthetic takes hurt with dtw-dependent, "},
-		{fitted(jitter{0}), "No difference shown: with euclidean-dependent, 14 errors in 24 tests become 14 (error 58.3 %, 95 % interval 38.8 to 75.5 %, p = 1); no difference shown with dtw-dependent, "},
+		{mirror(takes, true), "Synthetic takes help: with euclidean-dependent, 14 errors in 24 tests become 0 (reduction 100.0 %, 95 % interval 70.7 to 100.0 %, p = 0.00012); they help with dtw-dependent, "},
+		{mirror(takes, false), "Synthetic takes hurt: with euclidean-dependent, 14 errors in 24 tests become 24 (reduction -71.4 %, 95 % interval -166.7 to -26.3 %, p = 0.002); they hurt with dtw-dependent, "},
+		{fitted(jitter{0}), "No difference shown: with euclidean-dependent, 14 errors in 24 tests become 14 (reduction 0.0 %, 95 % interval -19.8 to 21.5 %, p = 1); no difference shown with dtw-dependent, "},
 	} {
 		if r := mustScore(t, takes, c.fit, classify.Options{PerTake: 40}); !strings.HasPrefix(r.Verdict, c.want) {
 			t.Errorf("verdict\n%s\nwant\n%s", r.Verdict, c.want)
@@ -161,7 +187,11 @@ func TestNotes(t *testing.T) {
 		"label of one take, people on both sides": {single, nil, classify.Options{}, []string{
 			"Trained but never tested: cue2 (1 take).",
 			"2 subjects both train and are tested: a person never recorded will be recognised less well; protocol subject keeps people apart.",
-			"The splits repeat 10 times over the same takes: intervals and p count each take once.",
+			"Takes are tested up to 7 times: intervals resample splits and takes, and p flips signs by take and by split, whichever shows less.",
+		}},
+		"fewer takes than asked for": {theatre(2, 3, 2, 0.1), nil, classify.Options{Protocol: classify.Subject, TakesPerLabel: []int{3, 9}}, []string{
+			"Takes are tested up to 2 times: intervals resample splits and takes, and p flips signs by take; 3 random splits are too few to tell how far the draw decides (6 or more would).",
+			"Trained on fewer takes than asked for in some splits, at worst by: cue0 (5 takes), cue1 (5 takes).",
 		}},
 		"shortfall": {theatre(2, 3, 2, 0.1), fitted(makerFunc(func(s *channels.Take, n int) ([]*channels.Take, error) {
 			return jitter{1}.Make(s, n-1)
@@ -236,4 +266,79 @@ func TestSampleScore(t *testing.T) {
 	if n := len(s.Takes()); n != 6 {
 		t.Errorf("%d takes of 3 labels left after shrinking to 2", n)
 	}
+}
+
+// TestLabelsAreCorrected checks the p of each label against McNemar's test and
+// Holm's correction, and that it names the label that was harmed.
+func TestLabelsAreCorrected(t *testing.T) {
+	takes := split(theatre(4, 4, 8, 0.3))
+	harm := fitted(makerFunc(func(source *channels.Take, n int) ([]*channels.Take, error) {
+		if source.Label != "cue1" {
+			return jitter{0}.Make(source, n)
+		}
+		var out []*channels.Take // every tested take of another cue, under this cue's name
+		for _, x := range takes {
+			if x.Split == channels.Test && x.Label == "cue2" && len(out) < n {
+				c := *x
+				out = append(out, &c)
+			}
+		}
+		return out, nil
+	}))
+	x := mustScore(t, takes, harm, classify.Options{PerTake: 40}).Results[1]
+	var ps []float64
+	for _, l := range x.PerLabel {
+		ps = append(ps, statistic.McNemar(0, *l.Synthetic-l.Recorded))
+	}
+	for i, p := range statistic.Holm(ps) {
+		l, want := x.PerLabel[i], classify.NoDifference
+		if l.Label == "cue2" {
+			want = classify.Hurts
+		}
+		if *l.P < 0.999*p || *l.P > 1.001*p || l.Finding != want {
+			t.Errorf("%s: %d errors become %d, p %g and %q, want %g and %q", l.Label, l.Recorded, *l.Synthetic, *l.P, l.Finding, p, want)
+		}
+	}
+}
+
+// TestWorkIsCounted counts the cells of every table one by one.
+func TestWorkIsCounted(t *testing.T) {
+	takes := split(theatre(2, 3, 3, 1))
+	for i, x := range takes { // of different lengths
+		x.Time, x.Data = x.Time[:12-i%4], x.Data[:2*(12-i%4)]
+	}
+	for d, cell := range map[template.Distance]func(n, m int) int{
+		template.DTWDependent:         func(n, m int) int { return inBand(n, m, 0.25) },
+		template.DTWIndependent:       func(n, m int) int { return 2 * inBand(n, m, 0.25) },
+		template.EuclideanDependent:   func(int, int) int { return 12 },
+		template.EuclideanIndependent: func(int, int) int { return 12 },
+		template.DirectionCosine:      func(int, int) int { return 16 },
+	} {
+		r := mustScore(t, takes, fitted(jitter{1}), classify.Options{Distances: []template.Distance{d}, Band: 0.25, PerTake: 3})
+		pairs, cells := int64(0), int64(0)
+		for _, x := range takes {
+			for _, y := range takes {
+				if x.Split == channels.Train && y.Split == channels.Test {
+					pairs++
+					cells += int64(cell(x.Frames(), y.Frames()))
+				}
+			}
+		}
+		if a, b := r.Results[0], r.Results[1]; a.Comparisons != pairs || a.Cells != cells || b.Comparisons != 4*pairs || b.Cells != 4*cells {
+			t.Errorf("%s: %d comparisons and %d cells, with synthetic takes %d and %d; want %d and %d, and four times that", d, a.Comparisons, a.Cells, b.Comparisons, b.Cells, pairs, cells)
+		}
+	}
+}
+
+// inBand counts the cells of a table that lie in the band.
+func inBand(n, m int, band float64) int {
+	half, cells := template.Metric{Band: band}.HalfWidth(n, m), 0
+	for i := range n {
+		for j := range m {
+			if max(i-j, j-i) <= half {
+				cells++
+			}
+		}
+	}
+	return cells
 }

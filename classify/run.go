@@ -2,24 +2,31 @@ package classify
 
 import (
 	"context"
+	"errors"
 	"fmt"
+	"slices"
 	"sync"
 	"sync/atomic"
 
 	"golang.org/x/sync/errgroup"
 
 	"strandwise/channels"
-	"strandwise/classify/template"
 )
 
 // run is one scoring under way.
 type run struct {
-	takes     []*channels.Take
-	fit       Fit
-	options   Options
-	folds     []fold
-	outcomes  [][]outcome // per distance and take
-	shortfall atomic.Int64
+	takes    []*channels.Take
+	methods  []Method
+	options  Options
+	learners []Learner
+	folds    []fold
+	variants []variant
+	names    []string       // of the labels, sorted
+	place    map[string]int // of a label among them
+	people   map[string]int // the units of resampling; nil when those are takes
+
+	answers   [][]answers    // per fold and learner; nil while the fold is not done
+	shortfall []atomic.Int64 // per method: synthetic takes that could not be made
 
 	progress func(done, total int)
 	mu       sync.Mutex // guards done, and calls of progress
@@ -27,22 +34,71 @@ type run struct {
 	total    int
 }
 
-// outcome counts how often one take was tested, and with what result.
-type outcome struct {
-	tested    int
-	recorded  int // errors with recorded templates
-	synthetic int // errors with recorded and synthetic ones
+// variant is one set of templates: recorded ones, and perhaps as many synthetic
+// ones per recorded one of a method.
+type variant struct {
+	method  int // −1 for recorded ones alone
+	perTake int
+	parts   []int // of what a study learns from; each variant adds one
 }
 
-func newRun(takes []*channels.Take, fit Fit, o Options, folds []fold, progress func(done, total int)) *run {
-	r := &run{takes: takes, fit: fit, options: o, folds: folds, progress: progress, outcomes: make([][]outcome, len(o.Distances))}
-	for d := range r.outcomes {
-		r.outcomes[d] = make([]outcome, len(takes))
+// answers is what one learner answered in one fold.
+type answers struct {
+	label    [][]int32 // per variant and take tested, the label's place
+	work     []Work    // per variant
+	distance [][]Answer
+}
+
+func newRun(takes []*channels.Take, methods []Method, o Options, folds []fold, progress func(done, total int)) *run {
+	r := &run{
+		takes: takes, methods: methods, options: o, learners: o.learners(), folds: folds, progress: progress,
+		names: distinct(takes, labelOf), place: make(map[string]int),
+		answers: make([][]answers, len(folds)), shortfall: make([]atomic.Int64, len(methods)),
+	}
+	for i, name := range r.names {
+		r.place[name] = i
+	}
+	r.variants = []variant{{method: -1, parts: []int{0}}}
+	parts := 1
+	for m := range methods {
+		v := variant{method: m, parts: []int{0}}
+		for _, end := range o.ends() {
+			v.perTake, v.parts = end, append(slices.Clone(v.parts), parts)
+			r.variants = append(r.variants, v)
+			parts++
+		}
 	}
 	for _, f := range folds {
 		r.total += len(f.training)
 	}
+	r.people = peopleOf(takes, folds)
 	return r
+}
+
+// peopleOf numbers the subjects tested when there are enough to resample them
+// and every take tested names one; else it returns nil.
+func peopleOf(takes []*channels.Take, folds []fold) map[string]int {
+	people := make(map[string]int)
+	for _, f := range folds {
+		for _, i := range f.test {
+			if takes[i].Subject == "" {
+				return nil
+			}
+			number(people, takes[i].Subject)
+		}
+	}
+	if len(people) < enough {
+		return nil
+	}
+	return people
+}
+
+// unit returns the number of the unit a take belongs to: its subject or itself.
+func (r *run) unit(place int) int {
+	if r.people == nil {
+		return place
+	}
+	return r.people[r.takes[place].Subject]
 }
 
 // pick returns the takes at the given places.
@@ -54,46 +110,94 @@ func (r *run) pick(places []int) []*channels.Take {
 	return out
 }
 
-// fold tests the takes of one fold and counts the outcomes.
-func (r *run) fold(ctx context.Context, f *fold) error {
-	s := split{run: r, training: r.pick(f.training)}
-	test := r.pick(f.test)
-	for _, m := range r.options.metrics() {
-		search, err := template.NewSearch(m, s.training, test)
-		if err != nil {
-			return fmt.Errorf("test takes: %w", err)
-		}
-		s.searches = append(s.searches, search)
+// turns are the right to compute, as many at a time as there are workers.
+type turns chan struct{}
+
+// take waits for a turn. The error is that of a context that ended.
+func (t turns) take(ctx context.Context) error {
+	select {
+	case t <- struct{}{}:
+	case <-ctx.Done():
+		return ctx.Err()
 	}
-	if r.options.PerTake > 0 {
-		// The maker learns from a copy of the list, so that nothing it does to
-		// it touches the templates.
-		maker, err := r.fit(r.pick(f.training))
-		if err != nil {
-			return fmt.Errorf("measure variation: %w", err)
-		}
-		s.maker = maker
-	}
-	if err := s.work(ctx); err != nil {
+	if err := ctx.Err(); err != nil {
+		t.give()
 		return err
-	}
-	for d, search := range s.searches {
-		for q, place := range f.test {
-			recorded, all := search.Nearest(q)
-			r.outcomes[d][place].count(r.takes[place].Label, s.label(recorded), s.label(all))
-		}
 	}
 	return nil
 }
 
-func (o *outcome) count(truth, recorded, all string) {
-	o.tested++
-	if recorded != truth {
-		o.recorded++
+func (t turns) give() { <-t }
+
+// work scores every fold. Several are under way at a time, as many as keep all
+// workers busy and one more, so that memory does not grow with the number of
+// folds.
+func (r *run) work(ctx context.Context) error {
+	least := len(r.takes)
+	for _, f := range r.folds {
+		least = min(least, len(f.training))
 	}
-	if all != truth {
-		o.synthetic++
+	turns := make(turns, r.options.Workers)
+	g, ctx := errgroup.WithContext(ctx)
+	g.SetLimit((r.options.Workers+least-1)/least + 1)
+	for i := range r.folds {
+		g.Go(func() error { return r.fold(ctx, turns, i) })
 	}
+	return g.Wait()
+}
+
+// fold scores one fold.
+func (r *run) fold(ctx context.Context, turns turns, i int) error {
+	s, err := r.begin(ctx, turns, &r.folds[i])
+	if err != nil {
+		return err
+	}
+	g, inner := errgroup.WithContext(ctx)
+	for range min(r.options.Workers, len(s.training)) {
+		g.Go(func() error { return s.work(inner, turns) })
+	}
+	if err := g.Wait(); err != nil {
+		return err
+	}
+	if err := turns.take(ctx); err != nil {
+		return err
+	}
+	defer turns.give()
+	r.answers[i], err = s.answers()
+	return err
+}
+
+// begin prepares one fold: the learners, and a maker of each method, which is
+// fitted on a copy of the list of training takes, so that nothing it does to
+// it touches the learners.
+func (r *run) begin(ctx context.Context, turns turns, f *fold) (*split, error) {
+	if err := turns.take(ctx); err != nil {
+		return nil, err
+	}
+	defer turns.give()
+	s := &split{run: r, fold: f, training: r.pick(f.training)}
+	s.lesson = Lesson{
+		Training: s.training, Test: r.pick(f.test), Rest: r.options.Rest,
+		Parts: len(r.variants), PerTake: r.options.PerTake, Reject: r.options.Reject,
+	}
+	for _, v := range r.variants {
+		s.lesson.Sets = append(s.lesson.Sets, v.parts)
+	}
+	for _, l := range r.learners {
+		study, err := l.Begin(s.lesson)
+		if err != nil {
+			return nil, err
+		}
+		s.studies = append(s.studies, study)
+	}
+	for _, m := range r.methods {
+		maker, err := m.Fit(r.pick(f.training))
+		if err != nil {
+			return nil, fmt.Errorf("measure variation: %w", err)
+		}
+		s.makers = append(s.makers, maker)
+	}
+	return s, nil
 }
 
 // advance counts one more training take.
@@ -106,85 +210,18 @@ func (r *run) advance() {
 	}
 }
 
-// split is one fold at work.
-type split struct {
-	*run
-	training []*channels.Take
-	searches []*template.Search
-	maker    Maker
-	next     atomic.Int64 // the next training take to deal with
-}
-
-// work offers every training take, and what is made from it, to the searches.
-func (s *split) work(ctx context.Context) error {
-	g, ctx := errgroup.WithContext(ctx)
-	for range min(s.options.Workers, len(s.training)) {
-		workers := make([]*template.Worker, len(s.searches))
-		for i, search := range s.searches {
-			workers[i] = search.Worker()
-		}
-		g.Go(func() error {
-			for {
-				i := int(s.next.Add(1)) - 1
-				if i >= len(s.training) {
-					return nil
-				}
-				if err := ctx.Err(); err != nil {
-					return err
-				}
-				if err := s.deal(i, workers); err != nil {
-					return err
-				}
-				s.advance()
-			}
-		})
-	}
-	return g.Wait()
-}
-
-// deal makes takes from training take i and offers them with it.
-func (s *split) deal(i int, workers []*template.Worker) error {
-	block, err := s.block(i)
-	if err != nil {
-		return err
-	}
-	for _, w := range workers {
-		if err := w.Offer(block); err != nil {
-			return fmt.Errorf("templates: %w", err)
+// finished returns the folds that are done.
+func (r *run) finished() []fold {
+	var out []fold
+	for i, f := range r.folds {
+		if r.answers[i] != nil {
+			out = append(out, f)
 		}
 	}
-	return nil
+	return out
 }
 
-// block returns training take i and the takes made from it as templates.
-// Recorded ones come first in the order of all, as in a set that synthetic
-// takes were added to.
-func (s *split) block(i int) ([]template.Template, error) {
-	source, n := s.training[i], s.options.PerTake
-	block := append(make([]template.Template, 0, 1+n), template.Template{Take: source, Order: i})
-	if n == 0 {
-		return block, nil
-	}
-	made, err := s.maker.Make(source, n)
-	if err != nil {
-		return nil, fmt.Errorf("make takes from %s%s: %w", source.ID, from(source), err)
-	}
-	if len(made) > n {
-		panic("classify: maker returned more takes than asked for")
-	}
-	s.shortfall.Add(int64(n - len(made)))
-	for k, t := range made {
-		block = append(block, template.Template{Take: t, Order: len(s.training) + i*n + k, Synthetic: true})
-	}
-	return block, nil
-}
-
-// label returns the label of the template of a match: that of the recorded
-// take it is or was made from.
-func (s *split) label(m template.Match) string {
-	i := m.Order
-	if i >= len(s.training) {
-		i = (i - len(s.training)) / s.options.PerTake
-	}
-	return s.training[i].Label
+// interrupted says whether an error is that of a context that ended.
+func interrupted(ctx context.Context, err error) bool {
+	return err != nil && ctx.Err() != nil && errors.Is(err, ctx.Err())
 }

@@ -96,8 +96,20 @@ func (s *Sample) LeftOut() int { return s.seen - len(s.Takes()) }
 // Score is [Score] on the takes kept; the report notes how many were left out.
 func (s *Sample) Score(ctx context.Context, fit Fit, o Options, progress func(done, total int)) (*Report, error) {
 	r, err := Score(ctx, s.Takes(), fit, o, progress)
-	if n := s.LeftOut(); err == nil && n > 0 {
+	return s.note(r), err
+}
+
+// Compare is [Compare] on the takes kept; the report notes how many were left
+// out.
+func (s *Sample) Compare(ctx context.Context, methods []Method, o Options, progress func(done, total int)) (*Report, error) {
+	r, err := Compare(ctx, s.Takes(), methods, o, progress)
+	return s.note(r), err
+}
+
+// note adds to a report, unless it is nil, how many takes were left out.
+func (s *Sample) note(r *Report) *Report {
+	if n := s.LeftOut(); r != nil && n > 0 {
 		r.Notes = append(r.Notes, fmt.Sprintf("Scored on a sample: %d of %d takes were left out, at most %d kept per label and split.", n, s.seen, s.most))
 	}
-	return r, err
+	return r
 }

@@ -50,7 +50,12 @@ func (osDisk) claim(path string) (file, error) {
 	return f, nil
 }
 
-func (osDisk) syncDir(path string) error {
+func (osDisk) syncDir(path string) error { return SyncFolder(path) }
+
+// SyncFolder makes the names in a folder last: what was made, renamed or
+// removed there is still so after a power failure. It does nothing where the
+// file system cannot.
+func SyncFolder(path string) error {
 	if runtime.GOOS == "windows" {
 		return nil // a folder cannot be synced there; renames are journalled
 	}

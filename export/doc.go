@@ -41,4 +41,16 @@
 // one of the columns above, upper and lower case apart, "_channel" is added.
 // The file metadata under the key strandwise.layout says which channel stands
 // in which column, with quantities, units, groups and limbs; see [FileLayout].
+//
+// In files of the table takes the key strandwise.skeletons holds the skeletons
+// of the takes that have one, a JSON list:
+//
+//	[{"takes": ["bow_1", "bow_1~0"], "skeleton": {"unit": "cm", "joints": […]}}]
+//
+// Each skeleton stands there once with the ids of its takes in the file, in the
+// form told of at [body.Skeleton]; a synthetic take has that of its source. With
+// it the channels of a take are enough to write the motion as BVH again.
+//
+// A file in the form of the table takes may also stand alone, outside a set: see
+// [TakeRows] and package recording.
 package export

@@ -39,7 +39,7 @@ func (t *table) addFrames(take *channels.Take) error {
 			return err
 		}
 		if from == 0 {
-			t.part.rate.take(take.Rate())
+			t.part.facts.rate.take(take.Rate())
 		}
 		n := min(frameBlock, take.Frames()-from)
 		t.addBlock(take, from, n)

@@ -75,18 +75,6 @@ func withChannels(columns []pages.Column, l *channels.Layout, kind pages.Kind) [
 	return columns
 }
 
-func (w *Writer) fileLayout(kind Table, rate commonRate) FileLayout {
-	return FileLayout{
-		Format: layoutFormat, ProgramVersion: w.options.Version, Table: kind, RateHz: rate.value(),
-		Layout: describeLayout(w.layout), Cautions: Cautions(),
-	}
-}
-
-func (l FileLayout) keyValue() (pages.KeyValue, error) {
-	text, err := marshal(l, "")
-	return pages.KeyValue{Key: LayoutKey, Value: string(text)}, err
-}
-
 // commonRate finds out whether takes share one frame rate. Rates count as one
 // when they agree to six decimals: clocks in seconds are rounded numbers.
 type commonRate struct {

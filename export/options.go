@@ -101,6 +101,10 @@ func (o Options) withDefaults() (Options, error) {
 }
 
 // program returns the name under which files say who wrote them.
-func (o Options) program() string {
-	return strings.TrimSpace("strandwise version " + o.Version)
+func (o Options) program() string { return Program(o.Version) }
+
+// Program returns the name under which files of a version of the program say who
+// wrote them.
+func Program(version string) string {
+	return strings.TrimSpace("strandwise version " + version)
 }

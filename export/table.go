@@ -21,7 +21,7 @@ type table struct {
 	columns []pages.Column
 	parts   int   // files begun
 	part    *part // the file being written, nil between two
-	text    parameterText
+	takes   *TakeRows
 }
 
 // part is one Parquet file being written.
@@ -33,15 +33,16 @@ type part struct {
 	group  hash.Hash32 // of the row group in the making
 	groups []RowGroup
 	floats int64 // bytes of raw floats in the row group in the making
-	rate   commonRate
+	facts  TakeFacts
 }
 
 func newTable(w *Writer, kind Table, split channels.Split) *table {
-	columns := takeColumns(w.layout)
+	takes := NewTakeRows(w.layout, false)
+	columns := takes.Columns()
 	if kind == Frames {
 		columns = frameColumns(w.layout)
 	}
-	return &table{set: w, kind: kind, columns: columns, folder: fmt.Sprintf("%s/split=%s", kind, split)}
+	return &table{set: w, kind: kind, columns: columns, takes: takes, folder: fmt.Sprintf("%s/split=%s", kind, split)}
 }
 
 // add writes the rows of one take.
@@ -116,11 +117,11 @@ func (t *table) end() error {
 	if err := p.endGroup(); err != nil {
 		return err
 	}
-	metadata, err := t.set.fileLayout(t.kind, p.rate).keyValue()
+	metadata, err := p.facts.metadata(t.set.layout, t.kind, t.set.options.Version)
 	if err != nil {
 		return err
 	}
-	if err := p.pages.Close([]pages.KeyValue{metadata}, t.set.options.program()); err != nil {
+	if err := p.pages.Close(metadata, t.set.options.program()); err != nil {
 		return err
 	}
 	t.part = nil // place closes the file, whatever comes

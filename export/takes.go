@@ -47,8 +47,82 @@ func fixedTakeColumns() []pages.Column {
 	}
 }
 
-func takeColumns(l *channels.Layout) []pages.Column {
-	return withChannels(fixedTakeColumns(), l, pages.Float32List)
+// takeSplit is the column that a file which stands alone may have in place of
+// the folders of a set. It stands after the channels.
+const takeSplit = "split"
+
+// TakeRows lays takes out as rows of the table takes, one row for each take: in
+// the files of a set, and in a file that stands alone.
+type TakeRows struct {
+	layout *channels.Layout
+	split  int // column of the split, -1 for none
+	text   parameterText
+}
+
+// NewTakeRows returns the rows of takes of this layout. With split they end in
+// a text column of that name, for a file that no folder places in a split;
+// without, the split is not part of a row.
+func NewTakeRows(l *channels.Layout, split bool) *TakeRows {
+	r := &TakeRows{layout: l, split: -1}
+	if split {
+		r.split = takeChannels + len(l.Channels)
+	}
+	return r
+}
+
+// Columns returns the columns of the rows, in order.
+func (r *TakeRows) Columns() []pages.Column {
+	out := withChannels(fixedTakeColumns(), r.layout, pages.Float32List)
+	if r.split >= 0 {
+		out = append(out, pages.Column{Name: takeSplit, Kind: pages.Text})
+	}
+	return out
+}
+
+// Rows receives rows column by column: what [pages.Writer], which is one, does
+// with them. A list is filled by the caller before its next call.
+type Rows interface {
+	AppendText(column int, text string, n int)
+	AppendNull(column, n int)
+	AppendInt32(column int, v int32)
+	AppendFloat64(column int, v float64)
+	List(column, n int) []byte // of n little-endian 32-bit floats
+}
+
+// Append adds a take of one frame or more as one row. It copies what it needs.
+func (r *TakeRows) Append(dst Rows, t *channels.Take) {
+	n := t.Frames()
+	dst.AppendText(takeID, t.ID, 1)
+	dst.AppendText(takeLabel, t.Label, 1)
+	dst.AppendText(takeSubject, t.Subject, 1)
+	dst.AppendText(takeSession, t.Session, 1)
+	dst.AppendText(takeOrigin, string(t.Origin()), 1)
+	r.appendMaking(dst, t.Made)
+	dst.AppendInt32(takeFrames, int32(n))
+	dst.AppendFloat64(takeRate, t.Rate())
+	dst.AppendFloat64(takeStart, t.Time[0])
+	putClock(dst.List(takeTime, n), t.Time)
+	for c, width := 0, t.Width(); c < width; c++ {
+		putChannel(dst.List(takeChannels+c, n), t.Data, width, c)
+	}
+	if r.split >= 0 {
+		dst.AppendText(r.split, string(t.Split), 1)
+	}
+}
+
+// appendMaking adds how a take was made, or nulls for a recorded one.
+func (r *TakeRows) appendMaking(dst Rows, m *channels.Making) {
+	if m == nil {
+		for c := takeSource; c <= takeParameters; c++ {
+			dst.AppendNull(c, 1)
+		}
+		return
+	}
+	dst.AppendText(takeSource, m.Source, 1)
+	dst.AppendInt32(takeDraw, int32(m.Draw))
+	dst.AppendInt32(takeRank, int32(m.Rank))
+	dst.AppendText(takeMethod, m.Method, 1)
+	dst.AppendText(takeParameters, r.text.encode(m.Parameters), 1)
 }
 
 // addTake writes a take as one row.
@@ -56,38 +130,11 @@ func (t *table) addTake(take *channels.Take) error {
 	if err := t.begin(); err != nil {
 		return err
 	}
-	p, n := t.part.pages, take.Frames()
-	p.AppendText(takeID, take.ID, 1)
-	p.AppendText(takeLabel, take.Label, 1)
-	p.AppendText(takeSubject, take.Subject, 1)
-	p.AppendText(takeSession, take.Session, 1)
-	p.AppendText(takeOrigin, string(take.Origin()), 1)
-	t.addMaking(p, take.Made)
-	rate := take.Rate()
-	t.part.rate.take(rate)
-	p.AppendInt32(takeFrames, int32(n))
-	p.AppendFloat64(takeRate, rate)
-	p.AppendFloat64(takeStart, take.Time[0])
-	putClock(p.List(takeTime, n), take.Time)
-	for c, width := 0, take.Width(); c < width; c++ {
-		putChannel(p.List(takeChannels+c, n), take.Data, width, c)
+	if err := t.part.facts.Note(take); err != nil {
+		return err
 	}
-	return t.endRows(1, int64(4*n*(1+take.Width())))
-}
-
-// addMaking writes how a take was made, or nulls for a recorded one.
-func (t *table) addMaking(p *pages.Writer, m *channels.Making) {
-	if m == nil {
-		for c := takeSource; c <= takeParameters; c++ {
-			p.AppendNull(c, 1)
-		}
-		return
-	}
-	p.AppendText(takeSource, m.Source, 1)
-	p.AppendInt32(takeDraw, int32(m.Draw))
-	p.AppendInt32(takeRank, int32(m.Rank))
-	p.AppendText(takeMethod, m.Method, 1)
-	p.AppendText(takeParameters, t.text.encode(m.Parameters), 1)
+	t.takes.Append(t.part.pages, take)
+	return t.endRows(1, int64(4*take.Frames()*(1+take.Width())))
 }
 
 // putClock fills dst with the seconds since the first frame.

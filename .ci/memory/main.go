@@ -1,7 +1,9 @@
-// Command memory writes a long invented recording of a given size, grows it
-// with the given program and reports the program's peak resident memory.
+// Command memory writes a long invented recording of a given size, grows or
+// checks it with the given program and reports the program's peak resident
+// memory.
 //
 //	go run ./memory -mb 1000 -limit 300 ./strandwise
+//	go run ./memory -do check -mb 2000 -limit 200 ./strandwise
 //
 // The recording is one CSV of many takes: two wrist channels of three axes at
 // 50 Hz, sines of random frequency with noise.
@@ -23,6 +25,7 @@ import (
 )
 
 func main() {
+	do := flag.String("do", "grow", "what to do with the recording: grow or check")
 	mb := flag.Int("mb", 100, "size of the recording in MB")
 	limit := flag.Int64("limit", 300, "most resident memory allowed, in MiB")
 	perTake := flag.Int("per-take", 4, "synthetic takes for each recorded one")
@@ -33,7 +36,7 @@ func main() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	peak, err := measure(flag.Arg(0), dir, *mb, *perTake)
+	peak, err := measure(flag.Arg(0), *do, dir, *mb, *perTake)
 	if err := os.RemoveAll(dir); err != nil {
 		log.Print(err)
 	}
@@ -45,21 +48,26 @@ func main() {
 	}
 }
 
-// measure grows a recording and returns the peak resident memory in MiB.
-func measure(program, dir string, mb, perTake int) (int64, error) {
+// measure grows or checks a recording and returns the peak resident memory in
+// MiB.
+func measure(program, do, dir string, mb, perTake int) (int64, error) {
 	recording := filepath.Join(dir, "long.csv")
 	takes, err := write(recording, mb)
 	if err != nil {
 		return 0, err
 	}
 	begin := time.Now()
-	run := exec.Command(program, "grow", recording, "--per-take", strconv.Itoa(perTake), "--out", filepath.Join(dir, "set"))
+	args := []string{do, recording}
+	if do == "grow" {
+		args = append(args, "--per-take", strconv.Itoa(perTake), "--out", filepath.Join(dir, "set"))
+	}
+	run := exec.Command(program, args...)
 	run.Stdout, run.Stderr = os.Stdout, os.Stderr
 	if err := run.Run(); err != nil {
 		return 0, err
 	}
 	peak := run.ProcessState.SysUsage().(*syscall.Rusage).Maxrss / 1024
-	fmt.Printf("%d MB, %d takes, %d synthetic each: peak resident %d MiB, %.0f s\n", mb, takes, perTake, peak, time.Since(begin).Seconds())
+	fmt.Printf("%s of %d MB, %d takes: peak resident %d MiB, %.0f s\n", do, mb, takes, peak, time.Since(begin).Seconds())
 	return peak, nil
 }
 

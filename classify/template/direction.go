@@ -17,9 +17,9 @@ const still = 1e-9
 // vector along the step and one more component, which is 1, with the others 0,
 // where the step has no length. Half the squared distance of two such vectors
 // is 1 minus the cosine between them. values are frames × width.
-func (p *preparer) directions(dst, values []float64, width int) []float64 {
+func (p *preparer) directions(dst []float64, groups [][]int, values []float64, width int) []float64 {
 	p.from, p.to = slices.Grow(p.from[:0], width), slices.Grow(p.to[:0], width)
-	for _, g := range p.groups {
+	for _, g := range groups {
 		walk := walk{values: values, width: width, group: g}
 		total := walk.measure()
 		from, to := p.from[:len(g)], p.to[:len(g)]

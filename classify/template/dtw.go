@@ -2,25 +2,6 @@ package template
 
 import "math"
 
-func dtwDependent(w *Worker, a, b *series, bound float64) float64 {
-	return w.warp(a.data, b.data, a.frames, b.frames, w.width, bound)
-}
-
-// dtwIndependent stops at the channel with which the sum of roots passes the
-// bound. The bound on a channel is widened by a millionth of the bound on the
-// sum, squared, which covers every rounding on the way.
-func dtwIndependent(w *Worker, a, b *series, bound float64) float64 {
-	sum, n, m := 0.0, a.frames, b.frames
-	for c := range w.width {
-		left, margin := bound-sum, 1e-6*bound
-		sum += math.Sqrt(w.warp(a.data[c*n:(c+1)*n], b.data[c*m:(c+1)*m], n, m, 1, left*left+margin*margin))
-		if sum > bound {
-			break
-		}
-	}
-	return sum
-}
-
 // warp returns the least sum of squared frame distances along a path of
 // dynamic time warping of a, n frames, and b, m frames, both frame-major of
 // the given width, within the metric's band; or any value above bound as soon
@@ -35,6 +16,7 @@ func (w *Worker) warp(a, b []float64, n, m, width int, bound float64) float64 {
 		s.a, s.first = a[i*width:min(n, i+stripRows)*width], i
 		// A look costs as much as some cells: one every other strip pays best.
 		look := i%(2*stripRows) != 0
+		w.sieve.counts.Cells += s.cells(m)
 		if s.fill(m, look) > bound {
 			return math.Inf(1)
 		}

@@ -2,7 +2,9 @@ package template
 
 import (
 	"fmt"
+	"maps"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -31,16 +33,21 @@ func ParseDistance(text string) (Distance, error) {
 // Normalise names what is done to the values of a take before it is compared.
 type Normalise string
 
-// The normalisations. ZScore takes the mean off each channel of each take and
-// divides by its population standard deviation; a channel that does not change
-// becomes zeros. It is done on the take's own frames, before any resampling.
+// The normalisations, done on the take's own frames before any resampling.
+//
+// ZScore takes the mean off each channel of each take and divides by the
+// channel's population standard deviation. GroupScale takes the same means off
+// and divides by one scale per channel group, the root of the mean variance of
+// its channels, which keeps the ratio of axes. A channel or group that does
+// not change becomes zeros. A layout without groups is one group.
 const (
-	AsIs   Normalise = "none"
-	ZScore Normalise = "z"
+	AsIs       Normalise = "none"
+	ZScore     Normalise = "z"
+	GroupScale Normalise = "group"
 )
 
 // Normalisations lists every normalisation.
-func Normalisations() []Normalise { return []Normalise{AsIs, ZScore} }
+func Normalisations() []Normalise { return []Normalise{AsIs, ZScore, GroupScale} }
 
 // ParseNormalise reads the name of a normalisation. The error lists the legal
 // names.
@@ -71,6 +78,11 @@ type Metric struct {
 	// is that of the longest recorded training take. Takes of another length
 	// are resampled linearly at equal intervals of their clock.
 	Length int
+	// Weights, when there are any, make the distance a sum over the layout's
+	// channel groups: of the weight times the distance of the group's channels
+	// by themselves. They go by the name of the group; a group they do not
+	// name weighs 1, and one of weight 0 is left out.
+	Weights map[string]float64
 }
 
 // Validate reports the first thing wrong with the metric.
@@ -89,8 +101,16 @@ func (m Metric) Validate() error {
 	if m.Length < 0 || m.Length == 1 {
 		return fmt.Errorf("length %d is no length to compare takes at; legal lengths are 2 and more, or 0 for the longest training take", m.Length)
 	}
+	for _, name := range slices.Sorted(maps.Keys(m.Weights)) {
+		if w := m.Weights[name]; !(w >= 0 && w <= heaviest) {
+			return fmt.Errorf("weight %g of group %s; legal weights lie from 0 to %g", w, name, float64(heaviest))
+		}
+	}
 	return nil
 }
+
+// heaviest is the largest weight: weighted distances stay finite.
+const heaviest = 1e6
 
 // bandSlack is taken off before rounding up, so that 0.1 of 130 frames is 13
 // and not 14: it is far above the rounding error of the product and far below

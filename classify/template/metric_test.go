@@ -25,7 +25,7 @@ func TestParseNames(t *testing.T) {
 		t.Errorf("ParseDistance(dtw): %v, want %s", err, want)
 	}
 	_, err = template.ParseNormalise("")
-	if want := `unknown normalisation ""; legal names are none, z`; err == nil || err.Error() != want {
+	if want := `unknown normalisation ""; legal names are none, z, group`; err == nil || err.Error() != want {
 		t.Errorf("ParseNormalise of nothing: %v, want %s", err, want)
 	}
 }

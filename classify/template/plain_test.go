@@ -25,36 +25,78 @@ func plainNearest(m template.Metric, query *channels.Take, block []template.Temp
 	return best
 }
 
+// plainDistance compares all channels at once, or group by group when there are
+// weights, and adds up weight × term.
 func plainDistance(m template.Metric, a, b *channels.Take) float64 {
 	x, y := plainSeries(m, a), plainSeries(m, b)
 	half := m.HalfWidth(a.Frames(), b.Frames())
-	switch m.Distance {
+	sum := 0.0
+	if len(m.Weights) == 0 {
+		for _, term := range plainTerms(m.Distance, x, y, plainGroups(a.Layout), half) {
+			sum += term
+		}
+		return sum
+	}
+	for _, g := range a.Layout.Groups {
+		weight, named := m.Weights[g.Name]
+		if !named {
+			weight = 1
+		}
+		alone := make([]int, len(g.Channels))
+		for k := range alone {
+			alone[k] = k
+		}
+		for _, term := range plainTerms(m.Distance, only(x, g.Channels), only(y, g.Channels), [][]int{alone}, half) {
+			sum += weight * term
+		}
+	}
+	return sum
+}
+
+// plainTerms returns what is added up to a distance.
+func plainTerms(d template.Distance, x, y [][]float64, groups [][]int, half int) (terms []float64) {
+	switch d {
 	case template.EuclideanDependent:
 		sum := 0.0
 		for i := range x {
 			sum += squaredDistance(x[i], y[i])
 		}
-		return math.Sqrt(sum)
+		return []float64{math.Sqrt(sum)}
 	case template.EuclideanIndependent:
-		total := 0.0
 		for c := range x[0] {
 			sum := 0.0
 			for i := range x {
 				sum += squaredDistance(x[i][c:c+1], y[i][c:c+1])
 			}
-			total += math.Sqrt(sum)
+			terms = append(terms, math.Sqrt(sum))
 		}
-		return total
+		return terms
 	case template.DTWDependent:
-		return plainWarp(x, y, half)
+		return []float64{plainWarp(x, y, half)}
 	case template.DTWIndependent:
-		total := 0.0
 		for c := range x[0] {
-			total += math.Sqrt(plainWarp(oneChannel(x, c), oneChannel(y, c), half))
+			terms = append(terms, math.Sqrt(plainWarp(only(x, []int{c}), only(y, []int{c}), half)))
 		}
-		return total
+		return terms
 	}
-	return plainDirections(x, y, a.Layout)
+	return []float64{plainDirections(x, y, groups)}
+}
+
+// plainGroups returns the channels of each group, all together when there are
+// no groups.
+func plainGroups(l *channels.Layout) [][]int {
+	if len(l.Groups) == 0 {
+		all := make([]int, len(l.Channels))
+		for c := range all {
+			all[c] = c
+		}
+		return [][]int{all}
+	}
+	var groups [][]int
+	for _, g := range l.Groups {
+		groups = append(groups, g.Channels)
+	}
+	return groups
 }
 
 // plainSeries returns the frames compared.
@@ -63,9 +105,14 @@ func plainSeries(m template.Metric, t *channels.Take) [][]float64 {
 	for i := range frames {
 		frames[i] = append([]float64(nil), t.Frame(i)...)
 	}
-	if m.Normalise == template.ZScore {
+	switch m.Normalise {
+	case template.ZScore:
 		for c := range t.Width() {
-			plainZ(frames, c)
+			plainScale(frames, []int{c})
+		}
+	case template.GroupScale:
+		for _, g := range plainGroups(t.Layout) {
+			plainScale(frames, g)
 		}
 	}
 	euclidean := m.Distance == template.EuclideanDependent || m.Distance == template.EuclideanIndependent
@@ -75,21 +122,28 @@ func plainSeries(m template.Metric, t *channels.Take) [][]float64 {
 	return frames
 }
 
-func plainZ(frames [][]float64, c int) {
-	n, mean, variance := float64(len(frames)), 0.0, 0.0
-	lowest, highest := frames[0][c], frames[0][c]
-	for _, f := range frames {
-		mean += f[c] / n
-		lowest, highest = min(lowest, f[c]), max(highest, f[c])
+// plainScale takes the mean off each channel and divides all by the root of
+// their mean variance, which is 0 when none of them changes.
+func plainScale(frames [][]float64, group []int) {
+	n, variance, still := float64(len(frames)), 0.0, true
+	for _, c := range group {
+		mean, first := 0.0, frames[0][c]
+		for _, f := range frames {
+			mean += f[c] / n
+			still = still && f[c] == first
+		}
+		for _, f := range frames {
+			f[c] -= mean
+			variance += f[c] * f[c] / n / float64(len(group))
+		}
 	}
 	for _, f := range frames {
-		variance += (f[c] - mean) * (f[c] - mean) / n
-	}
-	for _, f := range frames {
-		if lowest == highest {
-			f[c] = 0
-		} else {
-			f[c] = (f[c] - mean) / math.Sqrt(variance)
+		for _, c := range group {
+			if still {
+				f[c] = 0
+			} else {
+				f[c] /= math.Sqrt(variance)
+			}
 		}
 	}
 }
@@ -140,26 +194,21 @@ func squaredDistance(x, y []float64) float64 {
 	return sum
 }
 
-func oneChannel(x [][]float64, c int) [][]float64 {
+// only returns some channels of frames.
+func only(x [][]float64, group []int) [][]float64 {
 	out := make([][]float64, len(x))
 	for i := range x {
-		out[i] = x[i][c : c+1]
+		for _, c := range group {
+			out[i] = append(out[i], x[i][c])
+		}
 	}
 	return out
 }
 
-func plainDirections(x, y [][]float64, l *channels.Layout) float64 {
-	groups := l.Groups
-	if len(groups) == 0 {
-		all := channels.Group{}
-		for c := range l.Channels {
-			all.Channels = append(all.Channels, c)
-		}
-		groups = []channels.Group{all}
-	}
+func plainDirections(x, y [][]float64, groups [][]int) float64 {
 	sum := 0.0
 	for _, g := range groups {
-		p, q := plainSteps(x, g.Channels), plainSteps(y, g.Channels)
+		p, q := plainSteps(x, g), plainSteps(y, g)
 		for k := range p {
 			sum += 1 - plainCosine(p[k], q[k])
 		}

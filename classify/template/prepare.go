@@ -9,8 +9,21 @@ import (
 
 // series is a take made ready for one metric.
 type series struct {
-	frames int       // per channel
-	data   []float64 // frame-major for one path, channel-major for one per channel
+	frames   int       // of each part
+	data     []float64 // part after part, frame-major; directions group after group
+	sketches []sketch  // per part, of takes that are warped; else none
+	rings    []ring    // around the sketches, as they were asked for
+}
+
+// ring is the envelopes of a radius around the parts of a take.
+type ring struct {
+	radius int
+	around []envelope
+}
+
+// part returns the values of a part.
+func (s *series) part(p *part) []float64 {
+	return s.data[p.before*s.frames:][:p.width*s.frames]
 }
 
 // preparer makes takes ready for one metric. It holds scratch and serves one
@@ -18,35 +31,20 @@ type series struct {
 type preparer struct {
 	metric Metric
 	layout *channels.Layout
-	groups [][]int
+	parts  []part
+	scaled [][]int   // sets of channels that share a scale
 	values []float64 // the take normalised, frames × channels
 	laid   []float64 // and at the common length
 	from   []float64 // a point of a path
 	to     []float64 // and the next
 }
 
-// newPreparer returns a preparer for takes of the given layout. Channels that
-// no group holds count as one group together.
-func newPreparer(m Metric, layout *channels.Layout) *preparer {
-	return &preparer{metric: m, layout: layout, groups: groupsOf(layout)}
+// newPreparer returns a preparer for takes of the given layout.
+func newPreparer(m Metric, layout *channels.Layout, parts []part) *preparer {
+	return &preparer{metric: m, layout: layout, parts: parts, scaled: m.Normalise.scaled(layout)}
 }
 
-func groupsOf(l *channels.Layout) [][]int {
-	if len(l.Groups) == 0 {
-		all := make([]int, len(l.Channels))
-		for c := range all {
-			all[c] = c
-		}
-		return [][]int{all}
-	}
-	groups := make([][]int, len(l.Groups))
-	for i, g := range l.Groups {
-		groups[i] = g.Channels
-	}
-	return groups
-}
-
-// prepare makes t ready, reusing the memory of s.
+// prepare makes t ready, but for sketches, reusing the memory of s.
 func (p *preparer) prepare(s *series, t *channels.Take) error {
 	if err := p.check(t); err != nil {
 		if t.Where != "" {
@@ -56,27 +54,41 @@ func (p *preparer) prepare(s *series, t *channels.Take) error {
 	}
 	width := t.Width()
 	p.values = append(p.values[:0], t.Data...)
-	if p.metric.Normalise == ZScore {
-		zScore(p.values, width)
+	for _, c := range p.scaled {
+		scale(c, p.values, width)
 	}
 	s.frames, s.data = t.Frames(), s.data[:0]
+	values := p.values
 	switch p.metric.Distance {
-	case EuclideanDependent:
-		s.frames = p.metric.Length
-		s.data = p.atLength(s.data, t)
-	case EuclideanIndependent:
+	case EuclideanDependent, EuclideanIndependent:
 		s.frames = p.metric.Length
 		p.laid = p.atLength(p.laid[:0], t)
-		s.data = byChannel(s.data, p.laid, width)
-	case DTWDependent:
-		s.data = append(s.data, p.values...)
-	case DTWIndependent:
-		s.data = byChannel(s.data, p.values, width)
+		values = p.laid
 	case DirectionCosine:
 		s.frames = steps
-		s.data = p.directions(s.data, p.values, width)
+		for _, part := range p.parts {
+			s.data = p.directions(s.data, part.groups, values, width)
+		}
+		return nil
+	}
+	for _, part := range p.parts {
+		s.data = pick(s.data, values, part.groups[0], width)
 	}
 	return nil
+}
+
+// pick appends some channels of frame-major data.
+func pick(dst, data []float64, channels []int, width int) []float64 {
+	if len(channels) == width {
+		return append(dst, data...)
+	}
+	for i := 0; i < len(data); i += width {
+		frame := data[i : i+width]
+		for _, c := range channels {
+			dst = append(dst, frame[c])
+		}
+	}
+	return dst
 }
 
 // largest is the largest value compared: squares of it still add up to finite
@@ -119,42 +131,6 @@ func (p *preparer) atLength(dst []float64, t *channels.Take) []float64 {
 		a, b := p.values[i*width:(i+1)*width], p.values[(i+1)*width:(i+2)*width]
 		for c, v := range a {
 			dst = append(dst, (1-u)*v+u*b[c])
-		}
-	}
-	return dst
-}
-
-// zScore normalises each channel of frame-major data in place to mean 0 and
-// population standard deviation 1. A channel that never changes becomes zeros.
-func zScore(data []float64, width int) {
-	n := float64(len(data) / width)
-	for c := range width {
-		sum, changes := 0.0, false
-		for i := c; i < len(data); i += width {
-			sum += data[i]
-			changes = changes || data[i] != data[c]
-		}
-		mean, squares := sum/n, 0.0
-		for i := c; i < len(data); i += width {
-			data[i] -= mean
-			squares += data[i] * data[i]
-		}
-		sd := math.Sqrt(squares / n)
-		for i := c; i < len(data); i += width {
-			if changes && sd > 0 {
-				data[i] /= sd
-			} else {
-				data[i] = 0
-			}
-		}
-	}
-}
-
-// byChannel appends frame-major data one channel after the other.
-func byChannel(dst, data []float64, width int) []float64 {
-	for c := range width {
-		for i := c; i < len(data); i += width {
-			dst = append(dst, data[i])
 		}
 	}
 	return dst

@@ -69,6 +69,13 @@ func drawSearch(t *rapid.T, value *rapid.Generator[float64]) drawn {
 		Normalise: rapid.SampledFrom(template.Normalisations()).Draw(t, "normalisation"),
 		Band:      rapid.SampledFrom([]float64{0, 0.01, 0.1, 0.2, 0.5, 1}).Draw(t, "band"),
 	}
+	if rapid.Bool().Draw(t, "weighted") {
+		weight := rapid.SampledFrom([]float64{0, 0.5, 1, 3})
+		d.metric.Weights = map[string]float64{layout.Groups[0].Name: 2}
+		if len(layout.Groups) > 1 {
+			d.metric.Weights[layout.Groups[1].Name] = weight.Draw(t, "weight")
+		}
+	}
 	for all = rapid.Permutation(all).Draw(t, "order"); len(all) > 0; {
 		n := rapid.IntRange(1, len(all)).Draw(t, "block")
 		d.blocks = append(d.blocks, all[:n])

@@ -46,6 +46,16 @@ func (s *strip) fill(m int, look bool) float64 {
 	return least(s.row[max(0, s.first+rows-1-s.half)+1 : hi+1])
 }
 
+// cells returns the number of cells of the strip in the band of a table of m
+// columns.
+func (s *strip) cells(m int) int64 {
+	n := 0
+	for i := s.first; i < s.first+len(s.a)/s.width; i++ {
+		n += min(m, i+s.half+1) - max(0, i-s.half)
+	}
+	return int64(n)
+}
+
 // edge fills columns lo to hi, excluded, cell by cell. The band runs down to
 // the right: it leaves out the last rows of the strip at its left end and the
 // first at its right end. What it leaves in the row for columns the last row does

@@ -53,7 +53,7 @@ func Run(ctx context.Context, s Streams, args []string) error {
 	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
 		return &job.UsageError{Problem: fmt.Sprintf("%v; '%s -h' lists the flags", err, c.CommandPath())}
 	})
-	root.AddCommand(newDemo(s), newCheck(s), newGrow(s), newScore(s), newVerify(s))
+	root.AddCommand(newDemo(s), newCheck(s), newConvert(s), newGrow(s), newScore(s), newVerify(s))
 	return asUsage(root.ExecuteContext(ctx))
 }
 

@@ -28,7 +28,7 @@ func TestWrongUsageSaysWhatIsLegal(t *testing.T) {
 		{"method", grow("--method", "magic"), []string{"--method", "timed-path, path"}},
 		{"distance", grow("--distance", "taxi"), []string{"--distance", "dtw-independent"}},
 		{"normalise", grow("--normalise", "max"), []string{"--normalise", "none, z"}},
-		{"protocol", grow("--protocol", "best"), []string{"--protocol", "given, subject, pooled"}},
+		{"protocol", grow("--protocol", "best"), []string{"--protocol", "given, subject, session, pooled"}},
 		{"table", grow("--tables", "rows"), []string{"--tables", "takes and frames"}},
 		{"band", grow("--band", "2"), []string{"--band"}},
 		{"spread", grow("--spread", "0.5"), []string{"--spread", "1/3"}},
@@ -109,7 +109,7 @@ func TestFlagsWinOverThePlan(t *testing.T) {
 }
 
 func TestHelpOfEveryCommandShowsAnExample(t *testing.T) {
-	for _, name := range []string{"demo", "grow", "score", "verify"} {
+	for _, name := range []string{"demo", "check", "grow", "score", "verify", "convert"} {
 		if out := must(t, name, "-h"); !strings.Contains(out, "strandwise "+name+" ") {
 			t.Errorf("%s -h shows no example:\n%s", name, out)
 		}

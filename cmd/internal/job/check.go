@@ -8,7 +8,7 @@ import (
 
 // Check reports what the plan's recordings hold and what is wrong with them.
 func (p *Plan) Check(in io.Reader, progress Progress) (*ingest.Report, error) {
-	r, err := p.open(in)
+	r, err := p.open(in, strict)
 	if err != nil {
 		return nil, err
 	}

@@ -14,10 +14,14 @@ func NewPlan() *Plan {
 		Method:      "timed-path",
 		PerTake:     32,
 		Seed:        1,
+		Learner:     "template",
 		Distance:    []string{"euclidean-dependent", "dtw-dependent"},
 		Normalise:   "none",
 		Band:        0.1,
+		Kernels:     300,
+		Ridge:       "100",
 		Repeats:     10,
+		Reject:      true,
 		Tables:      []string{"takes"},
 		Workers:     runtime.GOMAXPROCS(0),
 	}
@@ -59,12 +63,21 @@ func (p *Plan) MakeFlags(f *pflag.FlagSet) {
 
 // ScoreFlags adds the flags that say how to score.
 func (p *Plan) ScoreFlags(f *pflag.FlagSet) {
-	f.StringVar(&p.Protocol, "protocol", p.Protocol, "given, subject or pooled (default: given with a test split, else subject with three people or more, else pooled)")
+	f.StringVar(&p.Protocol, "protocol", p.Protocol, "given, subject, session or pooled (default: given with a test split, else subject with three people or more, else pooled)")
+	f.StringVar(&p.Learner, "learner", p.Learner, "template (nearest, by each distance), convolution (random kernels and ridge regression) or both")
 	f.StringSliceVar(&p.Distance, "distance", p.Distance, "distances to nearest templates: euclidean- or dtw-, each -dependent or -independent, and direction-cosine")
-	f.StringVar(&p.Normalise, "normalise", p.Normalise, "none, or z: each take and channel to mean 0 and deviation 1")
+	f.StringVar(&p.Normalise, "normalise", p.Normalise, "for templates: none, z (each take and channel to mean 0 and deviation 1) or group (each group by one scale)")
 	f.Float64Var(&p.Band, "band", p.Band, "half width of the Sakoe–Chiba band as a fraction of the length, 1 for none")
-	f.IntVar(&p.Repeats, "repeats", p.Repeats, "random splits of protocol pooled")
-	f.IntVar(&p.TakesPerLabel, "takes-per-label", p.TakesPerLabel, "recorded training takes of each label in protocol pooled, 0 for half of them")
+	f.StringArrayVar(&p.Weight, "weight", p.Weight, "weight of a channel group in distances, GROUP=WEIGHT, 1 where none is given (repeatable)")
+	f.IntVar(&p.Kernels, "kernels", p.Kernels, "random kernels of the convolution learner")
+	f.StringVar(&p.Ridge, "ridge", p.Ridge, "ridge strength of the convolution learner, or choose: by leaving recorded takes out with what was made from them")
+	f.BoolVar(&p.RawKernels, "raw-kernels", p.RawKernels, "kernels read takes as they are, not brought to mean 0 and deviation 1")
+	f.IntVar(&p.Repeats, "repeats", p.Repeats, "random splits, where something is drawn at random")
+	f.IntSliceVar(&p.TakesPerLabel, "takes-per-label", p.TakesPerLabel, "recorded training takes of each label, such as 1,2,3,5; 0 for half of them (default: half in protocol pooled, else all)")
+	f.Float64Var(&p.TestShare, "test-share", p.TestShare, "of protocols subject and session: the share tested in each split, 0 for one at a time")
+	f.IntSliceVar(&p.Curve, "curve", p.Curve, "smaller numbers of synthetic takes per recorded one to report too, such as 0,4,8,16")
+	f.BoolVar(&p.Reject, "reject", p.Reject, "find the distance beyond which a movement is no gesture")
+	f.BoolVar(&p.Compare, "compare", p.Compare, "score every method of making takes, each at its defaults, beside the one chosen")
 }
 
 // WorkFlags adds the flag for the number of workers.

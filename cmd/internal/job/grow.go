@@ -46,7 +46,7 @@ type growing struct {
 	plan       *Plan
 	version    string
 	variation  augment.Variation
-	fit        classify.Fit
+	methods    []classify.Method
 	scoring    classify.Options
 	tables     []export.Table
 	recordings *ingest.Recordings
@@ -61,7 +61,7 @@ func (p *Plan) prepare(in io.Reader, version string, progress Progress) (*growin
 	if g.variation, err = p.variation(); err != nil {
 		return nil, err
 	}
-	if g.fit, err = p.fit(); err != nil {
+	if g.methods, err = p.methods(); err != nil {
 		return nil, err
 	}
 	if g.scoring, err = p.scoring(); err != nil {
@@ -80,7 +80,7 @@ func (p *Plan) prepare(in io.Reader, version string, progress Progress) (*growin
 	if err := export.Vacant(p.Out); err != nil {
 		return nil, err
 	}
-	g.recordings, err = p.open(in)
+	g.recordings, err = p.open(in, strict)
 	return g, err
 }
 
@@ -155,7 +155,7 @@ func (g *growing) score(ctx context.Context, w *export.Writer, s *survey, say fu
 		say(fmt.Sprintf("no score: %v", err))
 		return nil
 	}
-	report, err := score(ctx, s, g.fit, g.scoring, g.progress)
+	report, err := score(ctx, s, g.methods, g.scoring, g.progress)
 	if err != nil {
 		return err
 	}
@@ -181,7 +181,7 @@ func (g *growing) affordable(s *classify.Sample) error {
 			frames += t.Frames()
 		}
 		mean := float64(frames) / float64(len(takes))
-		if most <= 2 || float64(pairs)*mean*mean*2*g.plan.Band*float64(takes[0].Width()) <= mostCompared {
+		if most <= 2 || float64(pairs*len(g.methods))*mean*mean*2*g.plan.Band*float64(takes[0].Width()) <= mostCompared {
 			return nil
 		}
 		s.Shrink(most / 2)

@@ -56,11 +56,20 @@ type Plan struct {
 
 	// How to score.
 	Protocol      string   `toml:"protocol"`
+	Learner       string   `toml:"learner"`
 	Distance      []string `toml:"distance"`
 	Normalise     string   `toml:"normalise"`
 	Band          float64  `toml:"band"`
+	Weight        []string `toml:"weight"`
+	Kernels       int      `toml:"kernels"`
+	Ridge         string   `toml:"ridge"`
+	RawKernels    bool     `toml:"raw_kernels"`
 	Repeats       int      `toml:"repeats"`
-	TakesPerLabel int      `toml:"takes_per_label"`
+	TakesPerLabel []int    `toml:"takes_per_label"`
+	TestShare     float64  `toml:"test_share"`
+	Curve         []int    `toml:"curve"`
+	Reject        bool     `toml:"reject"`
+	Compare       bool     `toml:"compare"`
 
 	// What to write, and how.
 	Out     string   `toml:"out"`

@@ -10,8 +10,15 @@ import (
 	"strandwise/ingest"
 )
 
+// What is done about takes that cannot be grown: nothing but refuse them, or
+// pass them on as they are recorded, unlabelled or with values missing.
+const (
+	strict  = false
+	lenient = true
+)
+
 // open resolves the plan's recordings. The caller closes them.
-func (p *Plan) open(in io.Reader) (*ingest.Recordings, error) {
+func (p *Plan) open(in io.Reader, lenient bool) (*ingest.Recordings, error) {
 	units, err := p.units()
 	if err != nil {
 		return nil, err
@@ -31,6 +38,7 @@ func (p *Plan) open(in io.Reader) (*ingest.Recordings, error) {
 		Paths: p.Recordings, Pattern: p.Pattern, Label: p.Label, Columns: p.Columns,
 		Rate: p.Rate, TimeUnit: p.TimeUnit, Units: units, Groups: groups, LeaveOut: p.LeaveOut,
 		LengthUnit: p.LengthUnit, Stream: p.Stream, Repair: repair, Cut: ingest.Cut(p.Cut), Annotations: p.Annotations, Stdin: in,
+		Lenient: lenient,
 	})
 	return r, p.asUsage(err)
 }

@@ -30,27 +30,3 @@ func squares(a, b []float64, bound float64) float64 {
 	}
 	return s0 + s1 + (s2 + s3)
 }
-
-// slack widens a bound on a sum of squares so that whatever is above it is
-// above the bound on the distance too, after the roundings on the way there.
-const slack = 1 + 1e-12
-
-func euclideanDependent(_ *Worker, a, b *series, bound float64) float64 {
-	return math.Sqrt(squares(a.data, b.data, bound*bound*slack))
-}
-
-func euclideanIndependent(_ *Worker, a, b *series, bound float64) float64 {
-	sum, n := 0.0, a.frames
-	for c := 0; c < len(a.data); c += n {
-		sum += math.Sqrt(squares(a.data[c:c+n], b.data[c:c+n], math.Inf(1)))
-		if sum > bound {
-			break
-		}
-	}
-	return sum
-}
-
-func directionCosine(w *Worker, a, b *series, bound float64) float64 {
-	share := 1 / float64(2*steps*len(w.groups))
-	return squares(a.data, b.data, bound/share*slack) * share
-}
