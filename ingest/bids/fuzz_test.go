@@ -104,7 +104,7 @@ func checkSound(t *testing.T, x *raw.Take) {
 // it, in the order of the take, in the line of its frame.
 func checkValues(t *testing.T, x *raw.Take, motion string) {
 	t.Helper()
-	if strings.ContainsAny(motion, "\"\ufeff\xfe\xff") { // quoted, or in another encoding: left to the tests
+	if strings.ContainsAny(motion, "\"\ufeff") || strings.IndexByte(motion, 0xfe) >= 0 || strings.IndexByte(motion, 0xff) >= 0 { // quoted, or in another encoding: left to the tests
 		return
 	}
 	width, frame := len(x.Layout.Columns), 0

@@ -134,29 +134,3 @@ func TestBetween(t *testing.T) {
 		}
 	}
 }
-
-func TestInferUnit(t *testing.T) {
-	every := func(step float64) []float64 { return []float64{0, step, 2 * step, 3*step + step/10} }
-	for _, c := range []struct {
-		name     string
-		first    float64
-		times    []float64
-		unit     clock.Unit
-		evidence string
-		err      string
-	}{
-		{"s", 0, every(0.02), clock.Second, "its median step of 0.02 makes that 50 frames per second", ""},
-		{"ms", 0, every(10), clock.Millisecond, "its median step of 10 makes that 100 frames per second", ""},
-		{"us", 0, every(20000), clock.Microsecond, "its median step of 20000 makes that 50 frames per second", ""},
-		{"ns", 0, every(5e6), clock.Nanosecond, "its median step of 5e+06 makes that 200 frames per second", ""},
-		{"a slow log since 1970", 1.7e12, every(300), clock.Millisecond, "as such its first value lies in November 2023", ""}, // 1.7e9 s is 14 November 2023, 22:13:20 UTC
-		{"frames or ms", 0, []float64{1, 2, 3}, "", "", "counts 1, 2, 3: that may be milliseconds or frames"},
-		{"nothing fits", 0, every(300), "", "", "has a median step of 300, which fits no unit: no frame rate of 5 to 2000 per second"},
-		{"no steps", 0, []float64{1, 1}, "", "", "has no two times that differ"},
-	} {
-		unit, evidence, err := clock.InferUnit(c.first, c.times)
-		if unit != c.unit || evidence != c.evidence || (err != nil) != (c.err != "") || err != nil && err.Error() != c.err {
-			t.Errorf("%s: %q, %q, %v", c.name, unit, evidence, err)
-		}
-	}
-}

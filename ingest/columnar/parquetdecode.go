@@ -25,6 +25,7 @@ func (c *parquetColumn) decode(p *page) error {
 	if c.max > 0 {
 		n = count(p.definitions, c.max)
 	}
+	//lint:ignore SA1019 older writers still use this encoding
 	if p.encoding != format.RLEDictionary && p.encoding != format.PlainDictionary {
 		return c.convert(&c.dense, p, n)
 	}

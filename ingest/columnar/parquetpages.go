@@ -117,6 +117,7 @@ func (p *pages) dictionary(h *format.PageHeader) (*page, error) {
 		return nil, err
 	}
 	encoding := d.Encoding
+	//lint:ignore SA1019 older writers still use this encoding
 	if encoding == format.PlainDictionary {
 		encoding = format.Plain
 	}

@@ -4,9 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"strings"
-	"unicode"
-	"unicode/utf8"
 
 	"strandwise/ingest/fault"
 )
@@ -38,15 +35,4 @@ func quote(text []byte) string {
 		s = s[:most] + "…"
 	}
 	return fmt.Sprintf("%q", s)
-}
-
-// unclean says what makes a text unfit as a name, empty when nothing does.
-func unclean(text string) string {
-	switch {
-	case !utf8.ValidString(text):
-		return "is not valid UTF-8"
-	case strings.ContainsFunc(text, unicode.IsControl):
-		return "holds control characters"
-	}
-	return ""
 }

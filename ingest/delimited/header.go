@@ -2,10 +2,12 @@ package delimited
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"strandwise/channels"
 	"strandwise/ingest/raw"
+	"strandwise/ingest/table"
 )
 
 // role says what a column is for.
@@ -37,8 +39,8 @@ type column struct {
 	role role
 }
 
-// table is what the header and the first row say about the columns.
-type table struct {
+// header is what the header and the first row say about the columns.
+type header struct {
 	columns []column
 	keys    [keys]int // column of each identity, -1 for none
 	clock   clock
@@ -47,14 +49,14 @@ type table struct {
 
 // readHeader gives each column its role by name. Whether a channel column in
 // truth holds text is left to settle.
-func readHeader(names []string) (*table, error) {
-	t := &table{columns: make([]column, len(names)), keys: [keys]int{-1, -1, -1, -1, -1}}
+func readHeader(names []string) (*header, error) {
+	t := &header{columns: make([]column, len(names)), keys: [keys]int{-1, -1, -1, -1, -1}}
 	frame := -1
 	for i, name := range names {
 		c := &t.columns[i]
 		c.name = strings.TrimSpace(name)
-		key := identityKey(c.name)
-		unit, isTime := timeColumn(c.name)
+		key := slices.Index(keyNames[:], table.Key(c.name))
+		unit, isTime := table.IsTime(c.name)
 		switch {
 		case c.name == "":
 			c.role = blankRole
@@ -62,18 +64,18 @@ func readHeader(names []string) (*table, error) {
 			return nil, fmt.Errorf("two columns are named %s", keyNames[key])
 		case key >= 0:
 			c.role, t.keys[key] = identityRole, i
-		case isTime && t.clock.name == "":
-			c.role, t.clock = clockRole, clock{name: c.name, unit: unit}
-		case isFrame(c.name) && frame < 0:
+		case isTime && t.clock.Name == "":
+			c.role, t.clock = clockRole, clock{Clock: table.Clock{Name: c.name, Unit: unit}}
+		case table.IsFrame(c.name) && frame < 0:
 			c.role, frame = leftOutRole, i
-		case isTime || isFrame(c.name):
+		case isTime || table.IsFrame(c.name):
 			c.role = leftOutRole
 		}
 	}
-	if t.clock.name == "" {
-		t.clock.frames = true
+	if t.clock.Name == "" {
+		t.clock.Frames = true
 		if frame >= 0 {
-			t.columns[frame].role, t.clock.name = clockRole, t.columns[frame].name
+			t.columns[frame].role, t.clock.Name = clockRole, t.columns[frame].name
 		}
 	}
 	return t, nil
@@ -82,7 +84,7 @@ func readHeader(names []string) (*table, error) {
 // settle finishes the table with the first row: a channel column that the user
 // leaves out or whose first value is text is left out, and the rest make the
 // layout.
-func (t *table) settle(isText, leaveOut func(column int) bool) error {
+func (t *header) settle(isText, leaveOut func(column int) bool) error {
 	t.layout = &raw.Layout{}
 	seen := map[string]bool{}
 	for i := range t.columns {
@@ -102,13 +104,4 @@ func (t *table) settle(isText, leaveOut func(column int) bool) error {
 		t.layout.Columns = append(t.layout.Columns, raw.Column{Channel: ch, Unit: unit})
 	}
 	return nil
-}
-
-func identityKey(name string) int {
-	for k, n := range keyNames {
-		if strings.EqualFold(name, n) {
-			return k
-		}
-	}
-	return -1
 }

@@ -4,6 +4,8 @@ import (
 	"bytes"
 	"math"
 	"slices"
+
+	"strandwise/ingest/table"
 )
 
 // step is what the plain reading of a row does with one run of columns.
@@ -125,24 +127,24 @@ func (d *reader) plainTime(b []byte, i int) int {
 	case near:
 		i = values(d.one[:], b, i, d.split.sep, d.point)
 		d.now = d.one[0]
-		if c.frames && d.now != math.Trunc(d.now) {
+		if c.Frames && d.now != math.Trunc(d.now) {
 			return -1
 		}
 	case far:
 		var whole int64
 		var fraction float64
 		whole, fraction, i = farValue(b, i, d.point)
-		d.now = c.since(whole, fraction)
+		d.now = c.At(whole, fraction, len(times) == 0)
 	case stamps:
 		first := i
 		for b[i] != d.split.sep && b[i] != '\n' && b[i] != '\r' {
 			i++
 		}
-		whole, fraction, ok := stamp(b[first:i])
+		whole, fraction, ok := table.Stamp(string(b[first:i]))
 		if !ok {
 			return -1
 		}
-		d.now = c.since(whole, fraction)
+		d.now = c.At(whole, fraction, len(times) == 0)
 	}
 	if n := len(times); n > 0 && !(d.now > times[n-1]) {
 		return -1

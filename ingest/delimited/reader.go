@@ -11,6 +11,7 @@ import (
 	"strandwise/channels"
 	"strandwise/ingest/fault"
 	"strandwise/ingest/raw"
+	"strandwise/ingest/table"
 )
 
 var errStopped = errors.New("receiver stopped")
@@ -27,7 +28,7 @@ type reader struct {
 	remark bool // a comment was met
 	point  byte // decimal mark, noPoint while undecided
 	header int  // line of the header, 0 when the columns are named from outside
-	table  *table
+	table  *header
 	steps  []step
 
 	take   *raw.Take    // being read, nil before the first row
@@ -116,7 +117,7 @@ func (d *reader) readColumns() error {
 		}
 	}
 	for _, name := range names {
-		if what := unclean(strings.TrimSpace(name)); what != "" {
+		if what := table.Unclean(strings.TrimSpace(name)); what != "" {
 			return d.fault(d.header, "", "the header "+what, "save the file as UTF-8 text with one line per row")
 		}
 	}
@@ -250,8 +251,8 @@ func (d *reader) settle(line int) error {
 			d.table.clock.settle(fields[i].text, d.point)
 		}
 	}
-	if c := &d.table.clock; c.unit == "" && !c.frames {
-		c.unit = d.in.TimeUnit
+	if c := &d.table.clock; c.Unit == "" && !c.Frames {
+		c.Unit = d.in.TimeUnit
 	}
 	d.steps = plan(d.table.columns)
 	return nil
@@ -321,18 +322,15 @@ func (d *reader) time(text []byte, line int) (float64, error) {
 		var whole int64
 		var fraction float64
 		whole, fraction, how = c.split(text, d.point)
-		if len(times) == 0 {
-			c.whole, c.fraction = whole, fraction
-		}
-		now = c.since(whole, fraction)
+		now = c.At(whole, fraction, len(times) == 0)
 	}
 	switch {
-	case how == isText && c.kind == stamps || how == isText && len(times) == 0 && !c.frames:
-		return 0, d.fault(line, c.name, quote(text)+" is neither a number nor a time as 2006-01-02T15:04:05.000Z", "write all times alike")
+	case how == isText && c.kind == stamps || how == isText && len(times) == 0 && !c.Frames:
+		return 0, d.fault(line, c.Name, quote(text)+" is neither a number nor a time as 2006-01-02T15:04:05.000Z", "write all times alike")
 	case how != isNumber:
-		return 0, d.notNumber(text, how, line, c.name)
-	case c.frames && now != math.Trunc(now):
-		return 0, d.fault(line, c.name, quote(text)+" is no whole number", "name the column time if it holds time")
+		return 0, d.notNumber(text, how, line, c.Name)
+	case c.Frames && now != math.Trunc(now):
+		return 0, d.fault(line, c.Name, quote(text)+" is no whole number", "name the column time if it holds time")
 	}
 	return now, nil
 }

@@ -5,6 +5,7 @@ import (
 	"fmt"
 
 	"strandwise/ingest/raw"
+	"strandwise/ingest/table"
 )
 
 // identify starts a new take where the take column changes, and holds the
@@ -22,7 +23,7 @@ func (d *reader) identify(line int) error {
 		return nil
 	}
 	for k, text := range now {
-		if what := unclean(string(text)); what != "" {
+		if what := table.Unclean(string(text)); what != "" {
 			return d.fault(line, "", fmt.Sprintf("%s %s %s", keyNames[k], quote(text), what), "save the file as UTF-8 text, and repair the name")
 		}
 		if d.take != nil && string(now[takeKey]) == d.key[takeKey] && string(text) != d.key[k] {
@@ -54,9 +55,6 @@ func (d *reader) begin(line int) {
 		Time:   make([]float64, 0, d.frames),
 		Data:   make([]float64, 0, d.frames*len(d.table.layout.Columns)),
 	}
-	if d.table.clock.frames {
-		d.take.Clock = raw.Frames
-	}
 	d.due = line
 }
 
@@ -77,35 +75,11 @@ func (d *reader) finish() error {
 	}
 	t := d.take
 	d.take, d.frames = nil, len(t.Time)
-	if err := d.setClock(t); err != nil {
+	if err := d.table.clock.Finish(t, t.Time, d.in); err != nil {
 		return err
 	}
 	if !d.yield(t, nil) {
 		return errStopped
-	}
-	return nil
-}
-
-// setClock turns the times of a take into seconds. The first take of the file
-// settles their unit if nothing has.
-func (d *reader) setClock(t *raw.Take) error {
-	c := &d.table.clock
-	if c.frames {
-		return nil
-	}
-	if c.unit == "" && len(t.Time) < 2 {
-		c.unit = "s" // such a take is refused later, for what is wrong with it
-	}
-	if c.unit == "" {
-		evidence, err := c.infer(t.Time)
-		if err != nil {
-			return d.fault(t.Line, c.name, err.Error(), "state the unit of time with --time-unit, or name the column frame if it counts frames")
-		}
-		d.in.Notice(fmt.Sprintf("time column %q states no unit and is read as %s", c.name, c.unit), evidence)
-	}
-	origin, fromEpoch := c.seconds(t.Time)
-	if t.Origin = origin; fromEpoch {
-		d.in.Notice(fmt.Sprintf("time column %q counts from a distant epoch, so each take's clock is set to begin at 0", c.name), "")
 	}
 	return nil
 }
