@@ -3,6 +3,7 @@ package ingest
 import (
 	"errors"
 	"fmt"
+	"math"
 	"slices"
 
 	"strandwise/channels"
@@ -100,12 +101,18 @@ func (c *checker) take(t *raw.Take, id raw.Identity, name string, f *frame) {
 		return
 	}
 	file := &c.files[len(c.files)-1]
-	times := clock.Inspect(t.Time)
-	file.take(times)
 	l := look{checker: c, take: t, name: name, file: file.File, frame: f}
-	l.clock(times)
-	l.sensors()
-	l.signals(times.Step)
+	l.sensors = sensors(t, len(f.layout.Channels))
+	fastest := l.sensors[0].times
+	for _, s := range l.sensors {
+		l.clock(s)
+		if s.times.Step > 0 && s.times.Step < fastest.Step {
+			fastest = s.times
+		}
+	}
+	l.drift()
+	file.take(fastest)
+	l.signals(fastest.Step)
 	c.twice(t, id, name, file.File, f)
 	c.step()
 }
@@ -145,10 +152,41 @@ func (c *checker) twice(t *raw.Take, id raw.Identity, name, file string, f *fram
 // look is a look at one take.
 type look struct {
 	*checker
-	take  *raw.Take
-	name  string
-	file  string
-	frame *frame
+	take    *raw.Take
+	name    string
+	file    string
+	frame   *frame
+	sensors []sensor
+}
+
+// sensor is the channels of a take that were sampled together, on a clock of
+// their own. In a take of one sensor, rows are frames.
+type sensor struct {
+	channel int // its first one; −1 for all
+	rows    []int
+	times   clock.Report
+}
+
+// row returns the frame of the take a row of the sensor stands in.
+func (s sensor) row(i int) int {
+	if s.rows == nil {
+		return i
+	}
+	return s.rows[i]
+}
+
+// sensors returns the sensors of a take, at least one.
+func sensors(t *raw.Take, width int) []sensor {
+	if slices.ContainsFunc(t.Data, math.IsNaN) {
+		if list := clock.Sensors(t.Time, t.Data, width); len(list) > 1 {
+			out := make([]sensor, len(list))
+			for i, s := range list {
+				out[i] = sensor{s.Columns[0], s.Rows, clock.Inspect(clock.At(t.Time, s.Rows))}
+			}
+			return out
+		}
+	}
+	return []sensor{{channel: -1, times: clock.Inspect(t.Time)}}
 }
 
 // note adds a finding about this take; findings of one kind, file and channel
@@ -161,19 +199,20 @@ func (l *look) note(kind string, channel, frame, count int, text string) {
 	l.add(f, l.file+"\x00"+f.Channel)
 }
 
-// clock notes what is wrong with the times of the take.
-func (l *look) clock(r clock.Report) {
+// clock notes what is wrong with the times of a sensor.
+func (l *look) clock(s sensor) {
+	r := s.times
 	if n := len(r.Duplicates); n > 0 {
-		l.note(Duplicated, -1, r.Duplicates[0], n, "frames have the time of another frame")
+		l.note(Duplicated, s.channel, s.row(r.Duplicates[0]), n, "frames have the time of another frame")
 	}
 	if n := len(r.Reversals); n > 0 {
-		l.note(Reversed, -1, r.Reversals[0], n, "frames come before the frame above")
+		l.note(Reversed, s.channel, s.row(r.Reversals[0]), n, "frames come before the frame above")
 	}
 	if n := r.Missing(); n > 0 {
-		l.note(Gaps, -1, r.Gaps[0].Row, n, fmt.Sprintf("frames are missing, the first %.3g s", r.Gaps[0].Length))
+		l.note(Gaps, s.channel, s.row(r.Gaps[0].Row), n, fmt.Sprintf("frames are missing, the first %.3g s", r.Gaps[0].Length))
 	}
 	if r.Step > 0 && r.Jitter99 > jitterPart*r.Step {
-		l.note(Jitter, -1, 0, len(l.take.Time), fmt.Sprintf("steps stray from %.4g ms by %.3g ms in the median, %.3g ms at the 99th percentile", 1e3*r.Step, 1e3*r.Jitter, 1e3*r.Jitter99))
+		l.note(Jitter, s.channel, s.row(0), r.Frames, fmt.Sprintf("steps stray from %.4g ms by %.3g ms in the median, %.3g ms at the 99th percentile", 1e3*r.Step, 1e3*r.Jitter, 1e3*r.Jitter99))
 	}
 }
 
@@ -181,23 +220,14 @@ func (l *look) clock(r clock.Report) {
 // (common practice).
 const jitterPart = 0.05
 
-// sensors notes sensors of one take whose clocks differ.
-func (l *look) sensors() {
-	t := l.take
-	if !slices.ContainsFunc(t.Data, func(v float64) bool { return v != v }) {
-		return
-	}
-	list := clock.Sensors(t.Time, t.Data, len(l.frame.layout.Channels))
-	if len(list) < 2 {
-		return
-	}
-	first := clock.Inspect(clock.At(t.Time, list[0].Rows))
-	for _, s := range list[1:] {
-		own := clock.Inspect(clock.At(t.Time, s.Rows))
-		d := clock.Between(first, own)
+// drift notes sensors of one take whose clocks differ.
+func (l *look) drift() {
+	first := l.sensors[0]
+	for _, s := range l.sensors[1:] {
+		d := clock.Between(first.times, s.times)
 		if d.Ratio > 0 && (d.Up != d.Down || d.Parts != 0) {
-			l.note(Drift, s.Columns[0], 0, own.Frames, fmt.Sprintf("is sampled at %.4g Hz where %s is at %.4g Hz; it begins %.3g s and ends %.3g s after that",
-				1/own.Step, l.frame.layout.Channels[list[0].Columns[0]].Name, 1/first.Step, d.Start, d.End))
+			l.note(Drift, s.channel, s.row(0), s.times.Frames, fmt.Sprintf("frames are sampled at %.4g Hz where those of %s are at %.4g Hz; they begin %.3g s and end %.3g s after those",
+				1/s.times.Step, l.frame.layout.Channels[first.channel].Name, 1/first.times.Step, d.Start, d.End))
 		}
 	}
 }
@@ -206,6 +236,9 @@ func (l *look) sensors() {
 func (l *look) signals(step float64) {
 	data, width, groups := l.take.Data, len(l.frame.layout.Channels), l.frame.groups()
 	for _, f := range signal.Missing(data, width) {
+		if len(l.sensors) > 1 { // rows of the other sensors
+			break
+		}
 		l.note(Missing, f.Channel, f.First, f.Count, fmt.Sprintf("values are missing, up to %d in a row", f.Longest))
 	}
 	for _, f := range signal.Stuck(data, width, groups) {

@@ -8,6 +8,7 @@ import (
 	"strandwise/ingest/c3d"
 	"strandwise/ingest/columnar"
 	"strandwise/ingest/delimited"
+	"strandwise/ingest/jsonlines"
 	"strandwise/ingest/raw"
 )
 
@@ -19,6 +20,7 @@ func (o *Options) formats() []raw.Format {
 		bvh.Format{LengthUnit: o.LengthUnit},
 		c3d.Format{Stream: o.Stream},
 		columnar.Format{},
+		jsonlines.Format{},
 		delimited.Format{},
 	}
 }
