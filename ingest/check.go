@@ -175,18 +175,26 @@ func (s sensor) row(i int) int {
 	return s.rows[i]
 }
 
-// sensors returns the sensors of a take, at least one.
+// sensors returns the sensors of a take, at least one. Channels that were
+// sampled apart but at no steady rate are no sensors: values of theirs are
+// missing.
 func sensors(t *raw.Take, width int) []sensor {
-	if slices.ContainsFunc(t.Data, math.IsNaN) {
-		if list := clock.Sensors(t.Time, t.Data, width); len(list) > 1 {
-			out := make([]sensor, len(list))
-			for i, s := range list {
-				out[i] = sensor{s.Columns[0], s.Rows, clock.Inspect(clock.At(t.Time, s.Rows))}
-			}
-			return out
-		}
+	whole := []sensor{{channel: -1, times: clock.Inspect(t.Time)}}
+	if !slices.ContainsFunc(t.Data, math.IsNaN) {
+		return whole
 	}
-	return []sensor{{channel: -1, times: clock.Inspect(t.Time)}}
+	var out []sensor
+	for _, s := range clock.Sensors(t.Time, t.Data, width) {
+		one := sensor{s.Columns[0], s.Rows, clock.Inspect(clock.At(t.Time, s.Rows))}
+		if !one.times.Steady() {
+			return whole
+		}
+		out = append(out, one)
+	}
+	if len(out) < 2 {
+		return whole
+	}
+	return out
 }
 
 // note adds a finding about this take; findings of one kind, file and channel

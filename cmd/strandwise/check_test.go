@@ -16,32 +16,39 @@ import (
 
 var update = flag.Bool("update", false, "rewrite the golden files")
 
-// TestCheckOfHostileRecordings holds what check says of each unsound recording
-// to a golden file.
-func TestCheckOfHostileRecordings(t *testing.T) {
-	const dir = "../../testdata/hostile"
-	entries, err := os.ReadDir(dir)
-	if err != nil || len(entries) < 40 {
-		t.Fatalf("%d hostile recordings, want at least 40: %v", len(entries), err)
-	}
-	var got strings.Builder
-	for _, e := range entries {
-		o := strandwise(t, "", "check", filepath.Join(dir, e.Name()), "--rate", "50")
-		fmt.Fprintf(&got, "== %s: exit code %d\n%s%s\n", e.Name(), o.code, o.out, o.err)
-	}
-	text := strings.ReplaceAll(got.String(), filepath.FromSlash(dir)+string(filepath.Separator), "")
-	const golden = "../../testdata/hostile.check.golden"
-	if *update {
-		if err := os.WriteFile(golden, []byte(text), 0o666); err != nil {
-			t.Fatal(err)
-		}
-	}
-	want, err := os.ReadFile(golden)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if diff := cmp.Diff(strings.Split(string(want), "\n"), strings.Split(text, "\n")); diff != "" {
-		t.Errorf("what check says (-want +got):\n%s", diff)
+// TestCheckGolden holds what check says of each hostile recording, which must
+// be refused, and of each suspect one to golden files.
+func TestCheckGolden(t *testing.T) {
+	for _, folder := range []string{"hostile", "suspect"} {
+		t.Run(folder, func(t *testing.T) {
+			dir := filepath.Join("..", "..", "testdata", folder)
+			entries, err := os.ReadDir(dir)
+			if err != nil {
+				t.Fatal(err)
+			}
+			var got strings.Builder
+			for _, e := range entries {
+				o := strandwise(t, "", "check", filepath.Join(dir, e.Name()), "--rate", "50")
+				if folder == "hostile" && o.code != exitFault {
+					t.Errorf("%s is not refused", e.Name())
+				}
+				fmt.Fprintf(&got, "== %s: exit code %d\n%s%s\n", e.Name(), o.code, o.out, o.err)
+			}
+			text := strings.ReplaceAll(got.String(), dir+string(filepath.Separator), "")
+			golden := dir + ".check.golden"
+			if *update {
+				if err := os.WriteFile(golden, []byte(text), 0o666); err != nil {
+					t.Fatal(err)
+				}
+			}
+			want, err := os.ReadFile(golden)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if diff := cmp.Diff(strings.Split(string(want), "\n"), strings.Split(text, "\n")); diff != "" {
+				t.Errorf("what check says (-want +got):\n%s", diff)
+			}
+		})
 	}
 }
 

@@ -1,8 +1,8 @@
 // Package jsonlines reads takes from JSON: one object after another, on lines of
-// their own or not, or all in one list. It knows two forms.
+// their own or not, or all in one list. An object is one of three things.
 //
-// An object is a frame, as loggers write them. Objects within it count as
-// columns whose names are joined by dots, here accel.x, accel.y and accel.z:
+// It is a frame, as loggers write them. Objects within it count as columns
+// whose names are joined by dots, here accel.x, accel.y and accel.z:
 //
 //	{"take":"t01","label":"wave","t":0.00,"accel":{"x":0.1,"y":0.2,"z":9.8}}
 //	{"take":"t01","label":"wave","t":0.02,"accel":{"x":0.1,"y":0.3,"z":9.7}}
