@@ -75,6 +75,8 @@ func printReport(w io.Writer, r *ingest.Report) {
 }
 
 func printFiles(w io.Writer, files []ingest.FileReport) {
+	// Files that hold no takes by their nature, beside those that do.
+	files = slices.DeleteFunc(slices.Clone(files), func(f ingest.FileReport) bool { return f.Takes == 0 && f.Faults == 0 })
 	t := tabwriter.NewWriter(w, 0, 0, 2, ' ', 0)
 	fmt.Fprintln(t, "file\ttakes\tframes\tseconds\trate Hz\tjitter ms (median, 99 %)\tgaps\tfaults")
 	for i, f := range files {

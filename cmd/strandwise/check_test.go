@@ -2,19 +2,14 @@ package main
 
 import (
 	"encoding/json"
-	"flag"
 	"fmt"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
 
-	"github.com/google/go-cmp/cmp"
-
 	"strandwise/testdata/opendata"
 )
-
-var update = flag.Bool("update", false, "rewrite the golden files")
 
 // TestCheckGolden holds what check says of each hostile recording, which must
 // be refused, and of each suspect one to golden files.
@@ -35,19 +30,7 @@ func TestCheckGolden(t *testing.T) {
 				fmt.Fprintf(&got, "== %s: exit code %d\n%s%s\n", e.Name(), o.code, o.out, o.err)
 			}
 			text := strings.ReplaceAll(got.String(), dir+string(filepath.Separator), "")
-			golden := dir + ".check.golden"
-			if *update {
-				if err := os.WriteFile(golden, []byte(text), 0o666); err != nil {
-					t.Fatal(err)
-				}
-			}
-			want, err := os.ReadFile(golden)
-			if err != nil {
-				t.Fatal(err)
-			}
-			if diff := cmp.Diff(strings.Split(string(want), "\n"), strings.Split(text, "\n")); diff != "" {
-				t.Errorf("what check says (-want +got):\n%s", diff)
-			}
+			checkGolden(t, text, dir+".check.golden")
 		})
 	}
 }

@@ -3,10 +3,13 @@ package main
 import (
 	"bytes"
 	"context"
+	"flag"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"github.com/google/go-cmp/cmp"
 )
 
 // outcome is what one command line did.
@@ -64,4 +67,23 @@ func contents(t *testing.T, dir string) map[string]string {
 		t.Fatal(err)
 	}
 	return out
+}
+
+var update = flag.Bool("update", false, "rewrite the golden files")
+
+// checkGolden holds a text to a golden file.
+func checkGolden(t *testing.T, text, golden string) {
+	t.Helper()
+	if *update {
+		if err := os.WriteFile(golden, []byte(text), 0o666); err != nil {
+			t.Fatal(err)
+		}
+	}
+	want, err := os.ReadFile(golden)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if diff := cmp.Diff(strings.Split(string(want), "\n"), strings.Split(text, "\n")); diff != "" {
+		t.Errorf("%s (-want +got):\n%s", golden, diff)
+	}
 }

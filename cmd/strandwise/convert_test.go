@@ -147,23 +147,11 @@ const cues = "testdata/cues.csv"
 // TestConvertGolden converts a small recording with units, gaps and texts that
 // need quotes.
 func TestConvertGolden(t *testing.T) {
-	const golden = "testdata/cues.long.csv"
 	o := strandwise(t, "", "convert", cues, "-", "--as", "csv", "--unit", "strings=mm", "--leave-out", "battery")
 	if o.code != exitDone {
 		t.Fatal(o.err)
 	}
-	if *update {
-		if err := os.WriteFile(golden, []byte(o.out), 0o666); err != nil {
-			t.Fatal(err)
-		}
-	}
-	want, err := os.ReadFile(golden)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if diff := cmp.Diff(string(want), o.out); diff != "" {
-		t.Errorf("standard output (-want +got):\n%s", diff)
-	}
+	checkGolden(t, o.out, "testdata/cues.long.csv")
 }
 
 func TestConvertSaysWhatItWrote(t *testing.T) {

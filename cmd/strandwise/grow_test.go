@@ -139,6 +139,7 @@ func TestDemo(t *testing.T) {
 		}
 	}
 	must(t, "verify", filepath.Join(dir, "set"))
+	checkGolden(t, contents(t, filepath.Join(dir, "set"))["score.json"], filepath.Join("testdata", "demo.score.json"))
 	if o := strandwise(t, "", "demo", "--into", dir); o.code != exitFault || !strings.Contains(o.err, "--into") {
 		t.Errorf("a second demo in the same folder: exit code %d\n%s", o.code, o.err)
 	}
