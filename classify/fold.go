@@ -60,10 +60,10 @@ func (o Options) leaveOut(takes []*channels.Take, name string, property func(*ch
 	}
 	all := distinct(takes, property)
 	if len(all) < 2 {
-		return nil, fmt.Errorf("protocol %s: every take is by %s; leaving a %s out needs two or more; use protocol given or pooled", name, all[0], name)
+		return nil, fmt.Errorf("protocol %s: every take is of one %s, %s; leaving one out needs two or more; use protocol given or pooled", name, name, all[0])
 	}
 	if o.Repeats > 0 && o.TestShare == 0 && len(o.TakesPerLabel) == 0 {
-		return nil, fmt.Errorf("protocol %s draws nothing at random: repeats go with a share to leave out, with training takes per label, or with protocol pooled", name)
+		return nil, fmt.Errorf("protocol %s draws nothing at random: repeats go with a share to test, with training takes per label, or with protocol pooled", name)
 	}
 	var folds []fold
 	for r := range o.repeats() {

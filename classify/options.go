@@ -107,7 +107,7 @@ func (o Options) Validate() error {
 		}
 	}
 	if !(o.TestShare >= 0 && o.TestShare < 1) {
-		fault("share to leave out: %g; legal are shares from 0, one at a time, to below 1", o.TestShare)
+		fault("share to test: %g; legal are shares from 0, which tests one at a time, to below 1", o.TestShare)
 	}
 	if len(o.Rest) > 0 && !o.Reject {
 		fault("movements that are no gesture are only used to find a threshold for rejection, which is not asked for")

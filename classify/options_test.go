@@ -48,6 +48,14 @@ func TestOptionFaults(t *testing.T) {
 			t.Errorf("error %v does not say %s", err, text)
 		}
 	}
+	err = classify.Options{
+		TakesPerLabel: []int{2, 2}, PerTake: 8, Curve: []int{4, 9}, TestShare: 1, Rest: theatre(1, 1, 1, 1), Weights: map[string]float64{"left": -1},
+	}.Validate()
+	for _, text := range []string{"2 is below 0, or named twice", "curve: 9", "0 to 8", "share to test: 1", "no gesture", "weight -1 of group left"} {
+		if err == nil || !strings.Contains(err.Error(), text) {
+			t.Errorf("error %v does not say %s", err, text)
+		}
+	}
 	if err := (classify.Options{Band: 2}).Validate(); err == nil || strings.Count(err.Error(), "band 2") != 1 {
 		t.Errorf("error of one impossible band: %v", err)
 	}
@@ -86,11 +94,15 @@ func TestScoreRefuses(t *testing.T) {
 		"other channels":    {one(func(t *channels.Take) { t.Layout = &channels.Layout{} }), classify.Options{}, "needs the same"},
 		"nothing tested":    {all(channels.Train), classify.Options{Protocol: classify.Given}, "no take is of the test split"},
 		"nothing trains":    {all(channels.Test), classify.Options{}, "every take is of the test split"},
-		"one subject":       {theatre(2, 1, 2, 0.1), classify.Options{Protocol: classify.Subject}, "every take is by puppeteer0"},
+		"one subject":       {theatre(2, 1, 2, 0.1), classify.Options{Protocol: classify.Subject}, "every take is of one subject, puppeteer0"},
 		"no subject":        {one(func(t *channels.Take) { t.Subject = "" }), classify.Options{Protocol: classify.Subject}, "(evening.csv:120) names no subject"},
 		"none left to test": {theatre(2, 2, 2, 0.1), classify.Options{Protocol: classify.Pooled, TakesPerLabel: []int{4}}, "none to test of cue0 (4), cue1 (4)"},
 		"one take each":     {theatre(3, 1, 1, 0.1), classify.Options{}, "every label has one take"},
 		"repeats":           {theatre(2, 3, 2, 0.1), classify.Options{Repeats: 3}, "protocol subject draws nothing at random"},
+		"repeats of given":  {split(theatre(2, 3, 2, 0.1)), classify.Options{Repeats: 3}, "protocol given draws nothing at random"},
+		"share of pooled":   {theatre(2, 3, 2, 0.1), classify.Options{Protocol: classify.Pooled, TestShare: 0.5}, "goes with protocols subject and session"},
+		"no session":        {one(func(t *channels.Take) { t.Session = "" }), classify.Options{Protocol: classify.Session}, "(evening.csv:120) names no session"},
+		"one session":       {theatre(2, 2, 1, 0.1), classify.Options{Protocol: classify.Session}, "every take is of one session, evening0"},
 		"options":           {theatre(2, 3, 2, 0.1), classify.Options{Workers: -1}, "workers: -1"},
 	} {
 		for _, check := range []func() error{

@@ -1,6 +1,7 @@
 package classify
 
 import (
+	"errors"
 	"fmt"
 	"slices"
 	"strings"
@@ -58,12 +59,12 @@ func (o Options) folds(takes []*channels.Take) ([]fold, error) {
 	switch o.Protocol {
 	case Pooled:
 		if o.TestShare > 0 {
-			return nil, fmt.Errorf("protocol pooled leaves no one out: a share to leave out goes with protocols subject and session")
+			return nil, errors.New("protocol pooled keeps no one apart: a share to test goes with protocols subject and session")
 		}
 		return o.pooled(takes)
 	case Given:
 		if len(o.TakesPerLabel) > 0 || o.Repeats > 0 || o.TestShare > 0 {
-			return nil, fmt.Errorf("protocol given draws nothing at random: training takes per label, repeats and a share to leave out go with the other protocols")
+			return nil, errors.New("protocol given draws nothing at random: training takes per label, repeats and a share to test go with the other protocols")
 		}
 		return givenFold(takes)
 	case Session:

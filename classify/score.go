@@ -66,7 +66,7 @@ func Compare(ctx context.Context, takes []*channels.Take, methods []Method, o Op
 }
 
 // Comparisons returns how many pairs of takes [Score] would hold against each
-// other for one distance, or why it cannot score these takes: a single label,
+// other for one distance and method, or why it cannot score these takes: a single label,
 // say, or a protocol they do not allow.
 func (o Options) Comparisons(takes []*channels.Take) (int, error) {
 	o, folds, err := o.lay(takes)

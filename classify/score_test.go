@@ -393,6 +393,9 @@ func TestRandomLabels(t *testing.T) {
 		"subject": {Protocol: classify.Subject},
 	} {
 		t.Run(name, func(t *testing.T) {
+			if testing.Short() && name == "few" {
+				t.Skip("long: left out under -short")
+			}
 			o.Distances, o.PerTake = []template.Distance{template.EuclideanDependent}, 4
 			wrong := 0
 			for seed := range uint64(runs) {

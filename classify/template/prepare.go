@@ -15,12 +15,6 @@ type series struct {
 	rings    []ring    // around the sketches, as they were asked for
 }
 
-// ring is the envelopes of a radius around the parts of a take.
-type ring struct {
-	radius int
-	around []envelope
-}
-
 // part returns the values of a part.
 func (s *series) part(p *part) []float64 {
 	return s.data[p.before*s.frames:][:p.width*s.frames]

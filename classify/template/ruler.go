@@ -19,9 +19,12 @@ const spread = 3
 // singleLevels is the highest level where a word holds one channel.
 const singleLevels = 1<<13 - 1
 
-// newRuler returns a ruler for a part of takes like those given. Channels that
-// do not change, or not by a number that has an inverse, get a step of 0: their
-// sketches are all alike and bound nothing.
+// finest is the finest step: squares of finer ones are lost when a distance adds
+// them up, and nothing measured comes near it.
+const finest = 1e-100
+
+// newRuler returns a ruler for a part of takes like those given. Where the step
+// would be finer than the finest it is 0, and sketches bound nothing.
 func newRuler(p *part, takes []series) ruler {
 	r := ruler{width: p.width, origin: make([]float64, p.width)}
 	r.levels = singleLevels
@@ -33,7 +36,7 @@ func newRuler(p *part, takes []series) ruler {
 		r.origin[c] = mean
 		r.step = max(r.step, 2*spread*sd/r.levels)
 	}
-	if r.perUnit = 1 / r.step; r.perUnit > math.MaxFloat64 {
+	if r.perUnit = 1 / r.step; r.step < finest {
 		r.step, r.perUnit = 0, 0
 	}
 	for c := range r.origin {
@@ -95,6 +98,8 @@ func (r *ruler) over(root float64, cells int) uint64 {
 	return uint64(k)
 }
 
-// apart returns the most levels that rounding brings two takes nearer or
-// further, over some cells.
-func (r *ruler) apart(cells int) float64 { return math.Sqrt(float64(r.width * cells)) }
+// apart returns the most levels that the sketches of two takes are further apart
+// than the takes, over some cells.
+func (r *ruler) apart(cells int) float64 {
+	return math.Sqrt(float64(r.width*cells)) * (1 + rounding)
+}

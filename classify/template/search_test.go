@@ -26,9 +26,20 @@ type drawn struct {
 	workers  int
 }
 
-// drawSearch draws a search whose values come from value.
-func drawSearch(t *rapid.T, value *rapid.Generator[float64]) drawn {
-	width := rapid.IntRange(1, 7).Draw(t, "width")
+// drawer draws the values of a take.
+type drawer func(t *rapid.T, name string, frames, width int) []float64
+
+// each draws every value by itself.
+func each(value *rapid.Generator[float64]) drawer {
+	return func(t *rapid.T, name string, frames, width int) []float64 {
+		return rapid.SliceOfN(value, frames*width, frames*width).Draw(t, name)
+	}
+}
+
+// drawSearch draws a search of takes of no more than a number of frames out of
+// those given.
+func drawSearch(t *rapid.T, draw drawer, lengths ...int) drawn {
+	width := rapid.IntRange(1, 8).Draw(t, "width")
 	layout := layoutOf(width)
 	cut := rapid.IntRange(0, width-1).Draw(t, "group cut")
 	for _, g := range [][2]int{{0, cut}, {cut, width}} {
@@ -40,14 +51,14 @@ func drawSearch(t *rapid.T, value *rapid.Generator[float64]) drawn {
 			layout.Groups = append(layout.Groups, group)
 		}
 	}
-	most := rapid.SampledFrom([]int{3, 8, 30}).Draw(t, "most frames")
+	most := rapid.SampledFrom(lengths).Draw(t, "most frames")
 	drawTake := func(name string) *channels.Take {
 		frames := rapid.IntRange(2, most).Draw(t, name+" frames")
-		data := rapid.SliceOfN(value, frames*width, frames*width).Draw(t, name)
-		if data[0] == data[width] {
-			data[0]++ // a take must move
+		x := take(name, layout, draw(t, name, frames, width))
+		if x.Validate() != nil {
+			x.Data[0] = 3*x.Data[0] + 1 // a take must move
 		}
-		return take(name, layout, data)
+		return x
 	}
 	d := drawn{workers: rapid.IntRange(1, 3).Draw(t, "workers")}
 	for i := range rapid.IntRange(1, 4).Draw(t, "queries") {
@@ -127,13 +138,55 @@ func (d drawn) plain() ([]template.Template, template.Metric) {
 // small whole numbers, so that ties abound.
 func TestSearchIsExact(t *testing.T) {
 	whole := rapid.Map(rapid.IntRange(-2, 2), func(v int) float64 { return float64(v) })
+	rapid.Check(t, func(t *rapid.T) { checkExact(t, drawSearch(t, each(whole), 3, 8, 30)) })
+}
+
+// TestSearchIsExactOnWalks does so with takes long enough that every bound has
+// its say: random walks of whole numbers, copied with a little noise now and
+// then, some channels at rest, with values far out, and in units that make them
+// tiny or huge. The smallest are so small that their squares are lost.
+func TestSearchIsExactOnWalks(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
-		d := drawSearch(t, whole)
-		d.metric.Normalise = template.AsIs
-		d.metric.Distance = rapid.SampledFrom([]template.Distance{template.DTWDependent, template.DTWIndependent}).Draw(t, "warped")
-		checkSearch(t, d, func(got, want template.Match, _ *channels.Take, _ []template.Template, _ template.Metric) bool {
-			return got == want
-		})
+		unit := math.Ldexp(1, rapid.SampledFrom([]int{0, 0, 0, -10, 300, -300, -400, -538, -560}).Draw(t, "exponent"))
+		offset := unit * float64(rapid.SampledFrom([]int{0, 0, 1000, -1 << 20}).Draw(t, "offset"))
+		seeds := rapid.SampledFrom([]int{1, 3, 100}).Draw(t, "seeds")
+		d := drawSearch(t, func(t *rapid.T, name string, frames, width int) []float64 {
+			g := rand.New(rand.NewPCG(uint64(rapid.IntRange(1, seeds).Draw(t, name+" seed")), 7))
+			data := wholeWalk(g, frames, width)
+			for range rapid.IntRange(0, 3).Draw(t, name+" spots") {
+				data[rapid.IntRange(0, len(data)-1).Draw(t, name+" spot")] += float64(rapid.SampledFrom([]int{1, -2, 500}).Draw(t, name+" moved"))
+			}
+			for i := range data {
+				data[i] = data[i]*unit + offset
+			}
+			return data
+		}, 6, 24, 90)
+		checkExact(t, d)
+	})
+}
+
+// wholeWalk returns a random walk of whole numbers, some channels at rest.
+func wholeWalk(g *rand.Rand, frames, width int) []float64 {
+	data := make([]float64, frames*width)
+	resting := g.IntN(4)
+	for i := range data {
+		if c := i % width; c != resting {
+			data[i] = float64(g.IntN(7) - 3)
+			if i >= width {
+				data[i] += data[i-width]
+			}
+		}
+	}
+	return data
+}
+
+// checkExact holds a drawn search by DTW of takes as they are against the plain
+// code.
+func checkExact(t *rapid.T, d drawn) {
+	d.metric.Normalise = template.AsIs
+	d.metric.Distance = rapid.SampledFrom([]template.Distance{template.DTWDependent, template.DTWIndependent}).Draw(t, "warped")
+	checkSearch(t, d, func(got, want template.Match, _ *channels.Take, _ []template.Template, _ template.Metric) bool {
+		return got == want
 	})
 }
 
@@ -147,7 +200,7 @@ func TestSearchAgreesWithPlain(t *testing.T) {
 	// Thousandths: nothing so small that the reference itself loses it.
 	real := rapid.Map(rapid.IntRange(-2000, 2000), func(v int) float64 { return float64(v) / 1000 })
 	rapid.Check(t, func(t *rapid.T) {
-		checkSearch(t, drawSearch(t, real), func(got, want template.Match, query *channels.Take, all []template.Template, m template.Metric) bool {
+		checkSearch(t, drawSearch(t, each(real), 3, 8, 30), func(got, want template.Match, query *channels.Take, all []template.Template, m template.Metric) bool {
 			for _, o := range all {
 				if o.Order == got.Order {
 					own := plainDistance(m, query, o.Take)
@@ -241,17 +294,24 @@ func TestBandEdges(t *testing.T) {
 // they like the query or as far from it after the first frame as at the end.
 func TestTies(t *testing.T) {
 	l := layoutOf(2)
+	l.Groups = []channels.Group{{Name: "left", Channels: []int{0}}, {Name: "right", Channels: []int{1}}}
 	data := make([]float64, 2*80)
 	for i := range data {
 		data[i] = float64(i % 5)
 	}
 	query := take("query", l, data)
-	off := slices.Clone(data)
-	off[0], off[1] = -9, 9
-	for _, same := range []*channels.Take{query, take("off", l, off)} {
+	same := []*channels.Take{query}
+	for far := range 12 {
+		off := slices.Clone(data)
+		off[0], off[1] = -float64(far)/3, float64(far*far)/7
+		same = append(same, take("off", l, off))
+	}
+	for _, x := range same {
 		for _, distance := range template.Distances() {
-			for _, order := range [][]int{{0, 1, 2}, {2, 1, 0}, {1, 2, 0}, {2, 0, 1}} {
-				checkTie(t, distance, query, same, order)
+			for _, weights := range []map[string]float64{nil, {"left": 0.7, "right": 3}} {
+				for _, order := range [][]int{{0, 1, 2}, {2, 1, 0}, {1, 2, 0}, {2, 0, 1}} {
+					checkTie(t, template.Metric{Distance: distance, Weights: weights}, query, x, order)
+				}
 			}
 		}
 	}
@@ -259,9 +319,9 @@ func TestTies(t *testing.T) {
 
 // checkTie offers one take as three templates, of which the first by order is
 // synthetic.
-func checkTie(t *testing.T, distance template.Distance, query, same *channels.Take, order []int) {
+func checkTie(t *testing.T, m template.Metric, query, same *channels.Take, order []int) {
 	t.Helper()
-	s, err := template.NewSearch(template.Metric{Distance: distance}, []*channels.Take{same}, []*channels.Take{query})
+	s, err := template.NewSearch(m, []*channels.Take{same}, []*channels.Take{query})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -273,7 +333,7 @@ func checkTie(t *testing.T, distance template.Distance, query, same *channels.Ta
 	}
 	recorded, all := s.Nearest(0)
 	if recorded.Order != 1 || all.Order != 0 {
-		t.Errorf("%s to %s offered as %v: nearest recorded is %d and nearest of all %d, want 1 and 0", distance, same.ID, order, recorded.Order, all.Order)
+		t.Errorf("%s with weights %v to %s at %v offered as %v: nearest recorded is %d and nearest of all %d, want 1 and 0", m.Distance, m.Weights, same.ID, same.Data[:2], order, recorded.Order, all.Order)
 	}
 }
 

@@ -70,17 +70,13 @@ func (s *sieve) rejects(template *series, bound float64) bool {
 	half := s.search.metric.HalfWidth(s.query.frames, template.frames)
 	r, all := radius(half), max(s.query.frames, template.frames)/segmentFrames
 	clear(s.known)
-	for _, side := range []struct {
-		enveloped func(*series, int, bool) float64
-		count     *int64
-	}{
-		{s.aroundTemplate, &s.counts.TemplateEnvelope},
-		{s.aroundQuery, &s.counts.QueryEnvelope},
-	} {
-		if side.enveloped(template, r, r >= all) > bound {
-			*side.count++
-			return true
-		}
+	if s.aroundTemplate(template, r, r >= all) > bound {
+		s.counts.TemplateEnvelope++
+		return true
+	}
+	if s.aroundQuery(template, r, r >= all) > bound {
+		s.counts.QueryEnvelope++
+		return true
 	}
 	if s.warped(template, half, bound) > bound {
 		s.counts.Sketch++
@@ -93,6 +89,10 @@ func (s *sieve) rejects(template *series, bound float64) bool {
 // template's envelope, which is its range when the window is full.
 func (s *sieve) aroundTemplate(template *series, radius int, full bool) float64 {
 	sum := 0.0
+	var ring ring
+	if !full {
+		ring = template.ringOf(radius)
+	}
 	for p := range template.sketches {
 		a, b, rest := &s.query.sketches[p].segments, &template.sketches[p].segments, &s.along[p].query
 		*rest = sized(*rest, a.all+1)
@@ -100,7 +100,7 @@ func (s *sieve) aroundTemplate(template *series, radius int, full bool) float64 
 		if full {
 			k = a.yi(*rest, b)
 		} else {
-			k = a.keogh(*rest, &template.ringOf(radius).around[p])
+			k = a.keogh(*rest, &ring.around[p])
 		}
 		s.known[p] = s.atLeast(p, k, s.query.frames)
 		sum += s.known[p]

@@ -89,10 +89,6 @@ func (s *sketch) cost(i int, o *sketch, j int) uint64 {
 // costs sets dst to the squared distances of frame i to the frames of o from
 // frame lo on.
 func (s *sketch) costs(dst []uint64, i int, o *sketch, lo int) {
-	if s.single {
-		squaresTo(dst, s.words[i], o.words[lo:])
-		return
-	}
 	sum, norm, k, words := o.norms[lo:], s.norms[i], 0, len(s.words)/s.frames
 	for ; k+atOnce <= words; k += atOnce {
 		a, b := s.words[k*s.frames+i:], o.words[k*o.frames+lo:]
@@ -118,14 +114,5 @@ func lessOne(dst, sum []uint64, norm, a uint64, b []uint64) {
 	sum, b = sum[:len(dst)], b[:len(dst)]
 	for j := range dst {
 		dst[j] = sum[j] + norm - a*b[j]>>doubling
-	}
-}
-
-// squaresTo sets dst to the squares of the differences of a and b.
-func squaresTo(dst []uint64, a uint64, b []uint64) {
-	b = b[:len(dst)]
-	for j := range dst {
-		d := a - b[j]
-		dst[j] = d * d
 	}
 }

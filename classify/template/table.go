@@ -3,11 +3,11 @@ package template
 // table is a table of dynamic time warping of two sketches, of which one row is
 // held. It holds scratch and serves one goroutine.
 type table struct {
-	a, b  *sketch
+	a, b  *sketch             // of the rows and of the columns
 	row   []uint64            // the last row done: entry j+1 is column j, entry 0 the border
 	done  int                 // columns of it that were done; those after are endless
-	cost  [stripRows][]uint64 // of the cells being done
-	left  [stripRows]uint64   // the cells left of them
+	left  [stripRows]uint64   // in each row of the strip, the cell last done
+	cost  [stripRows][]uint64 // scratch of cells that are not done in one go
 	cells int64               // cells done, over all tables
 }
 
@@ -28,17 +28,15 @@ func (t *table) warp(a, b *sketch, half int, limit uint64, rest []uint64) uint64
 	t.reset(a, b)
 	begin, end := 0, 0 // of the columns alive in the row above
 	for first := 0; first < a.frames; first += stripRows {
-		ahead := rest[first/stripRows+1]
-		if ahead > limit {
-			return endless
-		}
-		lo, hi := max(begin, first-half), min(b.frames, first+stripRows+half)
-		if end < lo {
+		ahead, lo, hi := rest[first/stripRows+1], max(begin, first-half), min(b.frames, first+stripRows+half)
+		if ahead > limit || end < lo {
 			return endless // what is alive has left the band
 		}
 		t.strip(first, lo, hi, end+stripRows, limit-ahead)
-		begin, end = alive(t.row[1:t.done+1], lo, limit-ahead)
-		if begin == end {
+		if first+stripRows >= a.frames {
+			break // rows below the table need not be alive
+		}
+		if begin, end = alive(t.row[1:t.done+1], lo, limit-ahead); begin == end {
 			return endless
 		}
 	}
@@ -74,7 +72,7 @@ func (t *table) strip(first, lo, hi, end int, limit uint64) {
 	before, corner := t.done, t.row[lo]
 	t.row[lo] = endless // no path comes back left of lo
 	for end = min(hi, end); ; end = min(hi, end+further) {
-		corner = t.chunk(first, lo, end, corner)
+		corner = t.fill(first, lo, end, corner)
 		if lo = end; end == hi || min(t.left[0], t.left[1], t.left[2], t.left[3]) > limit {
 			break
 		}
@@ -83,34 +81,6 @@ func (t *table) strip(first, lo, hi, end int, limit uint64) {
 	for j := end; j < before; j++ {
 		t.row[j+1] = endless
 	}
-}
-
-// chunk does the cells of a strip in columns lo to hi. corner is the cell above
-// and left of the first; the one above and left of the next is returned.
-func (t *table) chunk(first, lo, hi int, corner uint64) uint64 {
-	for k := range t.cost {
-		c := t.cost[k][:hi-lo]
-		if first+k < t.a.frames {
-			t.a.costs(c, first+k, t.b, lo)
-		} else {
-			clear(c) // a row below the table, which nothing is read from
-		}
-	}
-	t.cells += int64(stripRows * (hi - lo))
-	row, c0, c1, c2, c3 := t.row[lo+1:hi+1], t.cost[0], t.cost[1], t.cost[2], t.cost[3]
-	c0, c1, c2, c3 = c0[:len(row)], c1[:len(row)], c2[:len(row)], c3[:len(row)]
-	left0, left1, left2, left3 := t.left[0], t.left[1], t.left[2], t.left[3]
-	for j, above := range row {
-		d0, d1, d2, d3 := min(above, corner), min(left0, left1), min(left1, left2), min(left2, left3)
-		corner = above
-		left0 = min(left0, d0) + c0[j]
-		left1 = min(left0, d1) + c1[j]
-		left2 = min(left1, d2) + c2[j]
-		left3 = min(left2, d3) + c3[j]
-		row[j] = left3
-	}
-	t.left = [stripRows]uint64{left0, left1, left2, left3}
-	return corner
 }
 
 // alive returns the range of the cells from lo on that lie at or below limit at

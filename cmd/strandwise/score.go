@@ -2,6 +2,8 @@ package main
 
 import (
 	"errors"
+	"fmt"
+	"time"
 
 	"github.com/spf13/cobra"
 
@@ -24,6 +26,7 @@ show no difference. Interrupted, it prints what it had.`,
 			if err := plan.Load(file, c.Flags(), args); err != nil {
 				return err
 			}
+			began := time.Now()
 			report, err := plan.Score(c.Context(), s.In, newBar(s), noticeTo(s.Err))
 			if report == nil {
 				return err
@@ -31,6 +34,7 @@ show no difference. Interrupted, it prints what it had.`,
 			if asJSON {
 				return errors.Join(printJSON(s.Out, report), err)
 			}
+			fmt.Fprintf(s.Err, "read and scored in %.1f s\n", time.Since(began).Seconds())
 			printScore(s.Out, report)
 			return err
 		}),

@@ -2,7 +2,9 @@ package main
 
 import (
 	"encoding/json"
+	"fmt"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"strandwise/testdata/opendata"
@@ -57,4 +59,32 @@ func TestGrowOfOpenRecordings(t *testing.T) {
 		t.Errorf("recorded %d, training %d, synthetic %d; want 360, 180 and 2880", got.Recorded, got.Training, got.Synthetic)
 	}
 	must(t, "verify", set)
+}
+
+func TestScoreRefusesWhatIsNoGesture(t *testing.T) {
+	csv := write(t, t.TempDir(), "long.csv", longCSV(4)+restCSV())
+	var got struct {
+		Labels  int
+		Results []struct {
+			Rejection *struct{ Threshold float64 }
+		}
+	}
+	out := must(t, "score", csv, "--rate", "50", "--per-take", "2", "--no-gesture", "rest", "--json")
+	if err := json.Unmarshal([]byte(out), &got); err != nil {
+		t.Fatal(err)
+	}
+	if got.Labels != 2 || got.Results[0].Rejection == nil {
+		t.Errorf("%d labels and rejection %+v; rest is no label, and sets a threshold\n%s", got.Labels, got.Results[0].Rejection, out)
+	}
+}
+
+// restCSV is rows of takes in which nothing is performed.
+func restCSV() string {
+	var b strings.Builder
+	for n := range 6 {
+		for i := range 30 {
+			fmt.Fprintf(&b, "r%02d,rest,ember,train,%d,%.4f,0.1,%.4f\n", n, i, 0.01*float64(i%3), 0.02*float64((i+n)%4))
+		}
+	}
+	return b.String()
 }

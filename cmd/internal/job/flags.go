@@ -77,6 +77,7 @@ func (p *Plan) ScoreFlags(f *pflag.FlagSet) {
 	f.Float64Var(&p.TestShare, "test-share", p.TestShare, "of protocols subject and session: the share tested in each split, 0 for one at a time")
 	f.IntSliceVar(&p.Curve, "curve", p.Curve, "smaller numbers of synthetic takes per recorded one to report too, such as 0,4,8,16")
 	f.BoolVar(&p.Reject, "reject", p.Reject, "find the distance beyond which a movement is no gesture")
+	f.StringSliceVar(&p.NoGesture, "no-gesture", p.NoGesture, "labels of takes that are no gesture: in the score they only set the distance beyond which a movement is refused")
 	f.BoolVar(&p.Compare, "compare", p.Compare, "score every method of making takes, each at its defaults, beside the one chosen")
 }
 

@@ -91,7 +91,7 @@ func (g *growing) run(ctx context.Context, notice func(string)) error {
 	}
 	takes := held.apply(g.recordings.Takes())
 	g.progress.Begin("reading", -1, "takes")
-	s, err := look(ctx, counted(takes, g.progress), mostScoredGrown, g.plan.Seed)
+	s, err := look(ctx, counted(takes, g.progress), mostScoredGrown, g.plan.Seed, g.plan.NoGesture)
 	if err != nil {
 		return err
 	}

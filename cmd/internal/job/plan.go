@@ -69,6 +69,7 @@ type Plan struct {
 	TestShare     float64  `toml:"test_share"`
 	Curve         []int    `toml:"curve"`
 	Reject        bool     `toml:"reject"`
+	NoGesture     []string `toml:"no_gesture"`
 	Compare       bool     `toml:"compare"`
 
 	// What to write, and how.

@@ -41,7 +41,7 @@ func (p *Plan) Score(ctx context.Context, in io.Reader, progress Progress, notic
 		return nil, p.asUsage(err)
 	}
 	progress.Begin("reading", -1, "takes")
-	s, err := look(ctx, counted(held.apply(r.Takes()), progress), mostScored, p.Seed)
+	s, err := look(ctx, counted(held.apply(r.Takes()), progress), mostScored, p.Seed, p.NoGesture)
 	if err != nil {
 		return nil, p.asUsage(err)
 	}
@@ -56,6 +56,7 @@ func (p *Plan) Score(ctx context.Context, in io.Reader, progress Progress, notic
 func score(ctx context.Context, s *survey, methods []classify.Method, o classify.Options, progress Progress) (*classify.Report, error) {
 	begun := 0
 	defer progress.End()
+	o.Rest = s.rest.Takes()
 	return s.sample.Compare(ctx, methods, o, func(done, total int) {
 		if begun == 0 {
 			progress.Begin("scoring", int64(total), "templates")

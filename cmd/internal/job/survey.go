@@ -2,6 +2,7 @@ package job
 
 import (
 	"context"
+	"slices"
 
 	"strandwise/augment"
 	"strandwise/channels"
@@ -17,12 +18,14 @@ type survey struct {
 	frames   int
 	scales   augment.Scales   // of the training takes
 	sample   *classify.Sample // to score on
+	rest     *classify.Sample // of takes that are no gesture
 }
 
 // look reads all recordings once, which also shows whether they are sound
-// before anything is written.
-func look(ctx context.Context, takes channels.Stream, most int, seed uint64) (*survey, error) {
-	s := &survey{sample: classify.NewSample(most, seed)}
+// before anything is written. At most so many takes of each label and split are
+// held to score on; noGesture lists the labels of takes that are no gesture.
+func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noGesture []string) (*survey, error) {
+	s := &survey{sample: classify.NewSample(most, seed), rest: classify.NewSample(most, seed)}
 	for t, err := range takes {
 		if err == nil {
 			err = ctx.Err()
@@ -37,7 +40,11 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64) (*s
 			s.training++
 			s.scales.Add(t)
 		}
-		s.sample.Add(t)
+		if slices.Contains(noGesture, t.Label) {
+			s.rest.Add(t)
+		} else {
+			s.sample.Add(t)
+		}
 	}
 	if s.takes == 0 {
 		return nil, &UsageError{Problem: "the recordings hold no takes"}
