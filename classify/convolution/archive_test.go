@@ -1,84 +1,14 @@
 package convolution_test
 
 import (
-	"encoding/csv"
-	"errors"
 	"fmt"
-	"io"
 	"math"
-	"os"
-	"path/filepath"
-	"strconv"
-	"strings"
 	"testing"
 
 	"strandwise/channels"
 	"strandwise/classify/convolution"
+	"strandwise/testdata/opendata"
 )
-
-// openSets returns the folder of the open sets, or skips the test.
-func openSets(t *testing.T) string {
-	t.Helper()
-	dir := os.Getenv("STRANDWISE_DATA")
-	if dir == "" {
-		root, err := os.Getwd()
-		if err != nil {
-			t.Fatal(err)
-		}
-		for {
-			if _, err := os.Stat(filepath.Join(root, "go.mod")); err == nil || root == filepath.Dir(root) {
-				break
-			}
-			root = filepath.Dir(root)
-		}
-		dir = filepath.Join(root, "..", "shared", "data")
-	}
-	dir = filepath.Join(dir, "sets")
-	if _, err := os.Stat(dir); err != nil {
-		t.Skipf("the open recordings are absent: set STRANDWISE_DATA to their folder (%v)", err)
-	}
-	return dir
-}
-
-// readTakes reads a long CSV file with the columns take, label, subject,
-// split, frame and one per channel. Frames count as seconds.
-func readTakes(t *testing.T, path string) []*channels.Take {
-	t.Helper()
-	file, err := os.Open(path)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	r := csv.NewReader(file)
-	header, err := r.Read()
-	if err != nil {
-		t.Fatal(err)
-	}
-	const first = 5 // columns before the channels
-	layout := layoutOf(len(header) - first)
-	var takes []*channels.Take
-	for {
-		row, err := r.Read()
-		if errors.Is(err, io.EOF) {
-			return takes
-		}
-		if err != nil {
-			t.Fatal(err)
-		}
-		if len(takes) == 0 || takes[len(takes)-1].ID != row[0] {
-			takes = append(takes, &channels.Take{ID: strings.Clone(row[0]), Label: strings.Clone(row[1]), Layout: layout})
-		}
-		x := takes[len(takes)-1]
-		x.Time = append(x.Time, float64(len(x.Time)))
-		for _, field := range row[first:] {
-			v, err := strconv.ParseFloat(field, 64)
-			if err != nil {
-				t.Fatal(err)
-			}
-			x.Data = append(x.Data, v)
-		}
-	}
-}
 
 // archive holds accuracies on the splits of the archive. Both are there for
 // their magnitude only: the published learner has 10 000 kernels, takes as
@@ -107,10 +37,15 @@ var archive = []struct {
 // a nearest template.
 func TestArchive(t *testing.T) {
 	const magnitude = 0.05
-	sets := openSets(t)
 	for _, a := range archive {
-		training := readTakes(t, filepath.Join(sets, a.set, "train.csv"))
-		test := readTakes(t, filepath.Join(sets, a.set, "test.csv"))
+		var training, test []*channels.Take
+		for _, x := range opendata.Set(t, a.set) {
+			if x.Split == channels.Test {
+				test = append(test, x)
+			} else {
+				training = append(training, x)
+			}
+		}
 		raw := accuracy(t, convolution.Options{Normalise: convolution.AsIs}, training, test)
 		if math.Abs(raw-a.convolution) > magnitude {
 			t.Errorf("%s as is: accuracy %.3f, published %.2f", a.set, raw, a.convolution)
