@@ -45,7 +45,7 @@ func fixFrame(first *raw.Layout, file string, o *Options, leaveOut func(string) 
 		}
 		f.units[i] = f.recordedIn(i, cmp.Or(c.Unit, list[i].Unit))
 	}
-	f.layout, err = grouped(list, o.Groups)
+	f.layout, err = f.grouped(list, o.Groups, first.Groups)
 	return f, err
 }
 
@@ -72,9 +72,14 @@ func applyRules(list []channels.Channel, rules []UnitRule) ([]channels.Unit, err
 	return out, nil
 }
 
-func grouped(list []channels.Channel, rules []group.Rule) (*channels.Layout, error) {
+// grouped makes the layout of a run: grouped by the rules of the user, failing
+// these as the first file states, or else by the names of the channels.
+func (f *frame) grouped(list []channels.Channel, rules []group.Rule, stated []raw.Group) (*channels.Layout, error) {
 	layout := &channels.Layout{Channels: list}
 	if len(rules) == 0 {
+		if out, err := layout.WithGroups(f.found(list, stated)); err == nil {
+			return out, nil
+		}
 		return layout.WithGroups(group.FromNames(list))
 	}
 	groups, err := group.FromRules(list, rules)
@@ -85,6 +90,35 @@ func grouped(list []channels.Channel, rules []group.Rule) (*channels.Layout, err
 		return nil, &UsageError{Key: "group", Problem: "channel groups", Err: err}
 	}
 	return layout, nil
+}
+
+// found finds the channels of the groups a file states, those left out aside.
+// It returns nil when a group has no name or names a channel that is not there.
+func (f *frame) found(list []channels.Channel, stated []raw.Group) []channels.Group {
+	at := make(map[string]int, len(list))
+	for i, c := range list {
+		at[c.Name] = i
+	}
+	var out []channels.Group
+	for _, s := range stated {
+		g := channels.Group{Name: s.Name, Limb: s.Limb}
+		for _, name := range s.Channels {
+			i, ok := at[name]
+			switch {
+			case ok:
+				g.Channels = append(g.Channels, i)
+			case !f.leaveOut(name):
+				return nil
+			}
+		}
+		switch {
+		case s.Name == "":
+			return nil
+		case len(g.Channels) > 0:
+			out = append(out, g)
+		}
+	}
+	return out
 }
 
 // convert returns the channel at position i as it is held, and the factor that

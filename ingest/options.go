@@ -66,8 +66,8 @@ type Options struct {
 	// rules match a channel, the last one holds.
 	Units []UnitRule
 
-	// Groups say which channels move together; none leaves it to the names of
-	// the channels.
+	// Groups say which channels move together; none leaves it to what the
+	// first file states or, failing that, to the names of the channels.
 	Groups []group.Rule
 
 	// Stdin is what "-" reads; nil is the standard input of the process.

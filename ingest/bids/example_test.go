@@ -3,6 +3,7 @@ package bids_test
 import (
 	"fmt"
 	"log"
+	"math"
 	"os"
 	"path/filepath"
 
@@ -26,9 +27,14 @@ func ExampleFormat() {
 		if err != nil {
 			log.Fatal(err)
 		}
-		first := take.Layout.Columns[0]
+		first, missing := take.Layout.Columns[0], 0
+		for _, v := range take.Data {
+			if math.IsNaN(v) {
+				missing++
+			}
+		}
 		fmt.Printf("%s by %s: %d frames in %.3f s\n", take.Take, take.Subject, len(take.Time), take.Time[len(take.Time)-1])
-		fmt.Printf("%s begins at %g %s; %d values are missing\n", first.Channel.Name, take.Data[0], first.Unit, len(take.Missing))
+		fmt.Printf("%s begins at %g %s; %d values are missing\n", first.Channel.Name, take.Data[0], first.Unit, missing)
 		for _, a := range take.Annotations {
 			fmt.Printf("%s from %.2f s\n", a.Label, a.Start)
 		}

@@ -54,7 +54,7 @@ func (m *motion) read(r io.Reader) error {
 				return err
 			}
 		}
-		m.add(plain)
+		m.add()
 	}
 	if len(m.take.Time) == 0 {
 		return m.fault(0, "", "has no rows", "leave it out or record it again")
@@ -94,8 +94,8 @@ func isValue(field []byte) bool {
 	return err == nil
 }
 
-// add adds m.row to the take. A plain row leaves no value out.
-func (m *motion) add(plain bool) {
+// add adds m.row to the take.
+func (m *motion) add() {
 	t := m.take
 	had := len(t.Data)
 	if cap(t.Data) < had+len(m.kept) {
@@ -104,8 +104,8 @@ func (m *motion) add(plain bool) {
 	for _, column := range m.kept {
 		t.Data = append(t.Data, m.row[column])
 	}
-	if !plain || m.absence.isNumber {
-		m.miss(t.Data[had:])
+	if m.absence.isNumber {
+		m.blank(t.Data[had:])
 	}
 	m.stand()
 	m.addTime()
@@ -123,14 +123,11 @@ func (m *motion) stand() {
 	m.due = m.line + 1
 }
 
-// miss notes the values that are missing from a frame about to be added.
-func (m *motion) miss(frame []float64) {
+// blank makes the number that stands for missing values NaN.
+func (m *motion) blank(frame []float64) {
 	for i, v := range frame {
-		if m.absence.isNumber && v == m.absence.number {
+		if v == m.absence.number {
 			frame[i] = math.NaN()
-		}
-		if math.IsNaN(frame[i]) {
-			m.take.Missing = append(m.take.Missing, raw.Missing{Frame: len(m.take.Time), Column: i, Line: m.line})
 		}
 	}
 }

@@ -3,6 +3,7 @@ package bids_test
 import (
 	"fmt"
 	"io/fs"
+	"math"
 	"os"
 	"path"
 	"path/filepath"
@@ -116,13 +117,15 @@ func described(t *raw.Take) string {
 		fmt.Fprintf(&b, "  channel %s: %s of %q, component %q, held in %q, stated in %q\n",
 			c.Channel.Name, c.Channel.Quantity, c.Channel.TrackedPoint, c.Channel.Component, c.Channel.Unit, c.Unit)
 	}
-	for _, m := range t.Missing {
-		fmt.Fprintf(&b, "  missing: frame %d, column %d, line %d\n", m.Frame, m.Column, m.Line)
+	width := len(t.Layout.Columns)
+	for i, v := range t.Data {
+		if math.IsNaN(v) {
+			fmt.Fprintf(&b, "  missing: frame %d, column %d, line %d\n", i/width, i%width, t.LineOf(i/width))
+		}
 	}
 	for _, a := range t.Annotations {
 		fmt.Fprintf(&b, "  %g to %g s: %s (line %d)\n", a.Start, a.End, a.Label, a.Line)
 	}
-	width := len(t.Layout.Columns)
 	for i, now := range t.Time {
 		fmt.Fprintf(&b, "  %.6g: %v\n", now, t.Data[i*width:(i+1)*width])
 	}

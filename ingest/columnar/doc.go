@@ -27,8 +27,8 @@
 // The unit of a channel stands in brackets in its name, or in the metadata of
 // its Arrow field under the key unit or units, which Parquet files keep under
 // the key ARROW:schema. A file with the metadata key strandwise.layout is part
-// of a set that this program wrote: its channels, quantities and units are
-// those the layout states, and its synthetic takes are read like recorded ones.
+// of a set that this program wrote: its channels, quantities, units and groups
+// are those the layout states, and its synthetic takes are read like recorded ones.
 //
 // Memory: Parquet is read page by page and Arrow batch by batch, so reading
 // takes one page of each column, or one batch, and one take.

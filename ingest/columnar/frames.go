@@ -100,7 +100,7 @@ func (d *reader) appendFrames(from, to int) error {
 	if finite {
 		return nil
 	}
-	return d.missing(t, frame, row)
+	return d.refuseInfinity(t, frame, row)
 }
 
 // finish hands on the take being read, if there is one.

@@ -38,6 +38,7 @@ type layout struct {
 		Component    string
 		Unit         string
 	}
+	Groups []raw.Group
 }
 
 // parseLayout reads a layout. The error is a fault.
@@ -80,7 +81,7 @@ func (l *layout) plan(leaves []leaf, in raw.Input) (*plan, error) {
 	find := func(name string) int {
 		return slices.IndexFunc(leaves, func(x leaf) bool { return x.name == name })
 	}
-	p := &plan{byTake: l.Table == takesTable, start: none, origin: none, layout: &raw.Layout{}}
+	p := &plan{byTake: l.Table == takesTable, start: none, origin: none, layout: &raw.Layout{Groups: l.Groups}}
 	for _, name := range table.Keys() {
 		column := name
 		if name == "take" && p.byTake {

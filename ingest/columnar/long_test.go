@@ -44,18 +44,15 @@ func TestLongForm(t *testing.T) {
 	want := []*raw.Take{{
 		Identity: raw.Identity{Take: "a", Label: "wave", Subject: "1", Split: "train"},
 		Layout:   layout, Time: []float64{0, 0.02, 0.045},
-		Data:    []float64{0.5, 1, 1, nan, 2, 2, 1.5, 3, nan},
-		Missing: []raw.Missing{{Frame: 1}, {Frame: 2, Column: 2}},
+		Data: []float64{0.5, 1, 1, nan, 2, 2, 1.5, 3, nan},
 	}, {
 		Identity: raw.Identity{Take: "b", Label: "nod", Subject: "2", Session: "am", Split: "test"},
 		Layout:   layout, Time: []float64{1, 1.02},
-		Data:    []float64{2, 4, 4, 2.5, 5, nan},
-		Missing: []raw.Missing{{Frame: 1, Column: 2}},
+		Data: []float64{2, 4, 4, 2.5, 5, nan},
 	}, {
 		Identity: raw.Identity{Take: "c", Label: "nod", Session: "pm"},
 		Layout:   layout, Time: []float64{0, 0.02},
-		Data:    []float64{3, 6, nan, 3.5, 60000, 7},
-		Missing: []raw.Missing{{Frame: 0, Column: 2}},
+		Data: []float64{3, 6, nan, 3.5, 60000, 7},
 	}}
 	notices := []string{`column "worn" is no channel and is left out (it holds true and false)`}
 	for _, c := range containers() {

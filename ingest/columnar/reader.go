@@ -197,15 +197,12 @@ func spread(dst []float64, width int, src []float64) (finite bool) {
 	return finite
 }
 
-// missing notes the NaN among the values of frames from one on, and refuses
-// infinities.
-func (d *reader) missing(t *raw.Take, frame int, row func(i int) string) error {
+// refuseInfinity refuses infinities among the values of frames from one on. NaN
+// are missing values.
+func (d *reader) refuseInfinity(t *raw.Take, frame int, row func(i int) string) error {
 	width := len(d.channels)
 	for i := frame * width; i < len(t.Data); i++ {
-		switch v := t.Data[i]; {
-		case math.IsNaN(v):
-			t.Missing = append(t.Missing, raw.Missing{Frame: i / width, Column: i % width})
-		case math.IsInf(v, 0):
+		if v := t.Data[i]; math.IsInf(v, 0) {
 			return d.fault(d.layout.Columns[i%width].Channel.Name, row(i/width-frame)+fmt.Sprintf("%g is no finite number", v), fillGap)
 		}
 	}

@@ -150,6 +150,34 @@ func TestSet(t *testing.T) {
 	}
 }
 
+// TestGroups reads the channel groups of a set as its layout states them, which
+// the names of its channels would not give.
+func TestGroups(t *testing.T) {
+	const channels = `"channels":[{"name":"c0","column":"c0","quantity":"MISC"},{"name":"c1","column":"c1","quantity":"MISC"},{"name":"c2","column":"c2","quantity":"MISC"}]`
+	for groups, want := range map[string][]raw.Group{
+		`[{"name":"left","limb":"arm","channels":["c0","c2"]},{"name":"right","limb":"","channels":["c1"]}]`: {
+			{Name: "left", Limb: "arm", Channels: []string{"c0", "c2"}}, {Name: "right", Channels: []string{"c1"}},
+		},
+		`[]`:   {},
+		`null`: nil,
+	} {
+		text := `{"format":"strandwise.layout/1","table":"frames",` + channels + `,"groups":` + groups + `}`
+		rec := record(t, map[string]string{"strandwise.layout": text},
+			col("take", str, `["a","a"]`), col("time_s", f64, `[0,1]`), col("c0", f32, `[1,2]`), col("c1", f32, `[3,4]`), col("c2", f32, `[5,6]`))
+		for _, w := range containers() {
+			got, _, err := readAll(bytes.NewReader(w.write(t, rec)), raw.Input{})
+			if err != nil || len(got) != 1 {
+				t.Fatalf("%s: %d takes, error %v", w.name, len(got), err)
+			}
+			if diff := cmp.Diff(want, got[0].Layout.Groups); diff != "" {
+				t.Errorf("%s, %s: %s", w.name, groups, diff)
+			}
+		}
+	}
+	checkFault(t, arrowFile(t, record(t, map[string]string{"strandwise.layout": `{"format":"strandwise.layout/1","table":"frames",` + channels + `,"groups":["left"]}`},
+		col("time_s", f64, `[0,1]`), col("c0", f32, `[1,2]`), col("c1", f32, `[3,4]`), col("c2", f32, `[5,6]`))), "f: its metadata strandwise.layout cannot be read")
+}
+
 func open(t testing.TB, path string) io.Reader {
 	t.Helper()
 	f, err := os.Open(path)

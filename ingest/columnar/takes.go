@@ -99,7 +99,6 @@ func (d *reader) readChannels(t *raw.Take, frames int) error {
 			for i := range frames {
 				t.Data[i*width+c] = math.NaN()
 			}
-			finite = finite && frames == 0
 			continue
 		}
 		from, to := v.span(0)
@@ -111,7 +110,7 @@ func (d *reader) readChannels(t *raw.Take, frames int) error {
 	if finite {
 		return nil
 	}
-	return d.missing(t, 0, func(i int) string { return fmt.Sprintf("row %d, value %d: ", d.row, i+1) })
+	return d.refuseInfinity(t, 0, func(i int) string { return fmt.Sprintf("row %d, value %d: ", d.row, i+1) })
 }
 
 // tellSynthetic says once that synthetic takes are read.

@@ -72,17 +72,16 @@ func wantTakes(name string) []*raw.Take {
 	layout := &raw.Layout{Columns: []raw.Column{header("sensor.accel.x"), header("n [deg]")}}
 	a := &raw.Take{
 		Identity: raw.Identity{Take: "a", Label: "wave"}, Layout: layout,
-		Time: []float64{0, 0.01, 0.03}, Data: []float64{1, 4, nan, 5, 3, 6}, Missing: []raw.Missing{{Frame: 1}},
+		Time: []float64{0, 0.01, 0.03}, Data: []float64{1, 4, nan, 5, 3, 6},
 	}
 	b := &raw.Take{Identity: raw.Identity{Take: "b"}, Layout: layout, Time: []float64{0.5}, Data: []float64{4, 7}}
 	c := &raw.Take{Identity: raw.Identity{Take: "c", Label: "nod"}, Layout: layout}
 	if name == "required" {
-		a.Data[2], a.Missing = 2, nil
+		a.Data[2] = 2
 	}
 	if name == "fixed" {
 		b.Time, b.Data = []float64{0.5, 0.6, 0.7}, []float64{4, 7, 5, 8, 6, 9}
 		c.Time, c.Data = []float64{0, 1, 2}, []float64{0, nan, 1, nan, 2, nan}
-		c.Missing = []raw.Missing{{Frame: 0, Column: 1}, {Frame: 1, Column: 1}, {Frame: 2, Column: 1}}
 	}
 	return []*raw.Take{a, b, c}
 }

@@ -229,14 +229,8 @@ func (d *reader) finish() error {
 	return nil
 }
 
-// deliver hands on a take, its times in seconds and its missing values noted.
+// deliver hands on a take, its times in seconds.
 func (d *reader) deliver(t *raw.Take, series []float64) error {
-	width := len(t.Layout.Columns)
-	for i, v := range t.Data {
-		if math.IsNaN(v) {
-			t.Missing = append(t.Missing, raw.Missing{Frame: i / width, Column: i % width, Line: t.LineOf(i / width)})
-		}
-	}
 	if err := d.finishClock(t, series); err != nil {
 		return err
 	}

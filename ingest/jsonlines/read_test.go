@@ -3,6 +3,7 @@ package jsonlines_test
 import (
 	"io"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -57,6 +58,7 @@ var cases = []struct {
 	name, file string
 	in         raw.Input
 	want       []*raw.Take
+	lacking    []int // lines of the frames that lack values, one take after another
 	told       []string
 }{{
 	name: "frames of nested objects",
@@ -71,9 +73,10 @@ var cases = []struct {
 		Time: []float64{0, 0.02}, Data: []float64{0.5, -1, 1.5, -100},
 	}, {
 		Identity: raw.Identity{Take: "b", Label: "nod", Subject: "7"}, Line: 4, Layout: layout("accel.x", "accel.y"),
-		Time: []float64{0, 0.02}, Data: []float64{3, 4, nan, 5}, Missing: []raw.Missing{{Frame: 1, Column: 0, Line: 5}},
+		Time: []float64{0, 0.02}, Data: []float64{3, 4, nan, 5},
 	}},
-	told: []string{`field "note" is no channel and is left out (it begins with "\"ok\"")`, `field "on" is no channel and is left out (it begins with "true")`},
+	lacking: []int{5},
+	told:    []string{`field "note" is no channel and is left out (it begins with "\"ok\"")`, `field "on" is no channel and is left out (it begins with "true")`},
 }, {
 	name: "one sensor per line",
 	file: `{"label":"wave","subject":"ana"}
@@ -97,13 +100,8 @@ var cases = []struct {
 			5, 6, nan, nan, nan,
 		},
 		Jumps: []raw.Jump{{Frame: 1, Line: 4}, {Frame: 2, Line: 6}, {Frame: 3, Line: 5}, {Frame: 4, Line: 7}},
-		Missing: []raw.Missing{
-			{Frame: 1, Column: 0, Line: 4}, {Frame: 1, Column: 1, Line: 4},
-			{Frame: 2, Column: 1, Line: 6}, {Frame: 2, Column: 2, Line: 6}, {Frame: 2, Column: 3, Line: 6}, {Frame: 2, Column: 4, Line: 6},
-			{Frame: 3, Column: 0, Line: 5}, {Frame: 3, Column: 1, Line: 5},
-			{Frame: 4, Column: 2, Line: 7}, {Frame: 4, Column: 3, Line: 7}, {Frame: 4, Column: 4, Line: 7},
-		},
 	}},
+	lacking: []int{4, 6, 5, 7},
 }, {
 	name: "sensors that take turns, without a name",
 	file: `{"t":0,"accel":{"x":1}}
@@ -113,10 +111,10 @@ var cases = []struct {
 `,
 	want: []*raw.Take{{
 		Line: 1, Layout: layout("accel.x", "gyro.x"), Time: []float64{0, 0.05, 0.051}, Data: []float64{1, 2, 3, nan, nan, 4},
-		Jumps:   []raw.Jump{{Frame: 1, Line: 3}},
-		Missing: []raw.Missing{{Frame: 1, Column: 1, Line: 3}, {Frame: 2, Column: 0, Line: 4}},
+		Jumps: []raw.Jump{{Frame: 1, Line: 3}},
 	}},
-	told: []string{`time column "t" states no unit and is read as ms (its median step of 50 makes that 20 frames per second)`},
+	lacking: []int{3, 4},
+	told:    []string{`time column "t" states no unit and is read as ms (its median step of 50 makes that 20 frames per second)`},
 }, {
 	name: "a sensor whose frames are out of order is left to the stages behind",
 	file: `{"sensor":"a","t_ms":0,"x":1}
@@ -127,8 +125,8 @@ var cases = []struct {
 `,
 	want: []*raw.Take{{
 		Line: 1, Layout: layout("a.x", "b.x"), Time: []float64{0, 0.005, 0.02, 0.01, 0.01}, Data: []float64{1, nan, nan, 2, 3, nan, 4, nan, nan, 5},
-		Missing: []raw.Missing{{Frame: 0, Column: 1, Line: 1}, {Frame: 1, Column: 0, Line: 2}, {Frame: 2, Column: 1, Line: 3}, {Frame: 3, Column: 1, Line: 4}, {Frame: 4, Column: 0, Line: 5}},
 	}},
+	lacking: []int{1, 2, 3, 4, 5},
 }, {
 	name: "takes of lists, on one line and over several",
 	file: `{"label":"wave","time_s":[0,0.01,0.03],"accel":{"x":[1,null,NaN],"y":["4","5",""]},"device":"left","rate":100,"names":["p","q","r"]}
@@ -148,15 +146,14 @@ var cases = []struct {
 	want: []*raw.Take{{
 		Identity: raw.Identity{Take: "1", Label: "wave"}, Line: 1, Layout: layout("accel.x", "accel.y"),
 		Time: []float64{0, 0.01, 0.03}, Data: []float64{1, 4, nan, 5, nan, nan},
-		Jumps:   []raw.Jump{{Frame: 1, Line: 1}, {Frame: 2, Line: 1}},
-		Missing: []raw.Missing{{Frame: 1, Column: 0, Line: 1}, {Frame: 2, Column: 0, Line: 1}, {Frame: 2, Column: 1, Line: 1}},
+		Jumps: []raw.Jump{{Frame: 1, Line: 1}, {Frame: 2, Line: 1}},
 	}, {
 		Identity: raw.Identity{Take: "2", Label: "nod"}, Line: 5, Layout: layout("accel.x", "accel.y"),
 		Time: []float64{0, 0.5}, Data: []float64{7, nan, 8, nan},
-		Missing: []raw.Missing{{Frame: 0, Column: 1, Line: 5}, {Frame: 1, Column: 1, Line: 6}},
 	}, {
 		Identity: raw.Identity{Take: "3", Label: "rest"}, Line: 13, Layout: layout("accel.x", "accel.y"),
 	}},
+	lacking: []int{1, 1, 5, 6},
 	told: []string{
 		`names no takes, so they are numbered`,
 		`numbers in quotes are read as numbers (accel.y)`,
@@ -180,8 +177,8 @@ var cases = []struct {
 `,
 	want: []*raw.Take{{
 		Line: 1, Layout: layout("ax"), Origin: 1700000000, Time: []float64{0, 0.02, 0.040000002}, Data: []float64{1.5, nan, 2.5},
-		Missing: []raw.Missing{{Frame: 1, Line: 2}},
 	}},
+	lacking: []int{2},
 	told: []string{
 		`numbers in quotes are read as numbers (ax)`,
 		`time column "timestamp" states no unit and is read as ns (its median step of 2e+07 makes that 50 frames per second)`,
@@ -250,8 +247,8 @@ var cases = []struct {
 `,
 	want: []*raw.Take{{
 		Line: 1, Layout: layout("ax", "ay"), Time: []float64{0, 0.01, 0.02}, Data: []float64{1, nan, 2, nan, 3, 4},
-		Missing: []raw.Missing{{Frame: 0, Column: 1, Line: 1}, {Frame: 1, Column: 1, Line: 2}},
 	}},
+	lacking: []int{1, 2},
 }, {
 	name: "columns left out",
 	file: `{"t_ms":0,"ax":1,"ay":"x","az":[1,2,{}],"aw":9}
@@ -274,12 +271,28 @@ func TestRead(t *testing.T) {
 				if diff := cmp.Diff(c.want, got, append(same, cmpopts.EquateApprox(0, 1e-12))...); diff != "" {
 					t.Error(diff)
 				}
+				if diff := cmp.Diff(c.lacking, lacking(got)); diff != "" {
+					t.Errorf("lines of frames that lack values: %s", diff)
+				}
 				if diff := cmp.Diff(c.told, told); diff != "" {
 					t.Error(diff)
 				}
 			}
 		})
 	}
+}
+
+// lacking returns the lines of the frames that lack values.
+func lacking(takes []*raw.Take) (lines []int) {
+	for _, t := range takes {
+		width := len(t.Layout.Columns)
+		for i := range t.Time {
+			if slices.ContainsFunc(t.Data[i*width:(i+1)*width], math.IsNaN) {
+				lines = append(lines, t.LineOf(i))
+			}
+		}
+	}
+	return lines
 }
 
 // dribble reads one byte at a time.

@@ -75,10 +75,9 @@ type Take struct {
 	Clock  Clock   // what Time counts
 	Origin float64 // when Time is 0, in seconds since 1970 UTC; 0 when the file does not say
 	Time   []float64
-	Data   []float64 // frames × channels, frame-major, as recorded; NaN where Missing says so
+	Data   []float64 // frames × channels, frame-major, as recorded; NaN where a value is missing
 
 	Skeleton    *body.Skeleton // whose joints the channels are, nil when the file has none; shared and read-only
-	Missing     []Missing      // values the file leaves out, by frame and then column
 	Annotations []Annotation   // what the file says happened when, by start
 }
 
@@ -95,12 +94,6 @@ func (t *Take) LineOf(frame int) int {
 		return t.Line + frame
 	}
 	return t.Jumps[i-1].Line + frame - t.Jumps[i-1].Frame
-}
-
-// Missing is one value a file leaves out: an empty field, a marker not seen.
-type Missing struct {
-	Frame, Column int
-	Line          int // 1-based line of a text file, else 0
 }
 
 // Annotation is a stretch of a recording that the recording itself, or a file
@@ -125,6 +118,13 @@ type Identity struct {
 // Layout is the channels of one file, in its own order.
 type Layout struct {
 	Columns []Column
+	Groups  []Group // channel groups the file states, empty when it states none
+}
+
+// Group is a channel group as a file states it.
+type Group struct {
+	Name, Limb string
+	Channels   []string // by name
 }
 
 // Column is one channel as a file holds it.
