@@ -59,7 +59,8 @@ type Options struct {
 	Annotations string
 
 	// Lenient passes takes on as they are recorded: without a label, with
-	// values missing (NaN) and whatever [channels.Take.Validate] would refuse.
+	// values missing (NaN) and whatever [channels.Take.Validate] would refuse,
+	// and the synthetic takes of a set too, which are left out otherwise.
 	Lenient bool
 
 	// Units add to or override the units the recordings state. Where several

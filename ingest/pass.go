@@ -118,6 +118,10 @@ func (p *pass) fit(l *raw.Layout, file string) (*fit, error) {
 
 // take hands on what a raw take becomes: itself, or the pieces of it.
 func (p *pass) take(t *raw.Take, s source, index int, fitted *fit) error {
+	if t.Synthetic && !p.r.options.Lenient {
+		p.notices.add(s.name, "holds synthetic takes, which are left out: they are no recordings, and must not be scored on", "the first is "+takeID(t.Take, s))
+		return nil
+	}
 	if err := p.clock(t, s); err != nil {
 		return err
 	}

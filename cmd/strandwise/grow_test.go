@@ -144,3 +144,27 @@ func TestDemo(t *testing.T) {
 		t.Errorf("a second demo in the same folder: exit code %d\n%s", o.code, o.err)
 	}
 }
+
+// Synthetic takes are no recordings: grown from a set, or scored on, they would
+// flatter. Only convert passes them on.
+func TestSetReadsBackAsItsRecordings(t *testing.T) {
+	dir := t.TempDir()
+	csv := write(t, dir, "long.csv", longCSV(2))
+	set := filepath.Join(dir, "set")
+	must(t, "grow", csv, "--rate", "50", "--per-take", "3", "--out", set)
+	again := strandwise(t, "", "grow", set, "--per-take", "3", "--out", filepath.Join(dir, "again"), "--json")
+	var got struct{ Recorded, Training, Synthetic int }
+	if err := json.Unmarshal([]byte(again.out), &got); err != nil {
+		t.Fatalf("%v\n%s", err, again.err)
+	}
+	if got.Recorded != 12 || got.Training != 8 || got.Synthetic != 24 {
+		t.Errorf("from a set of 12 recorded takes and 24 synthetic ones: %+v", got)
+	}
+	if !strings.Contains(again.err, "synthetic takes, which are left out") {
+		t.Errorf("what is left out is not told:\n%s", again.err)
+	}
+	long := filepath.Join(dir, "all.csv")
+	if said := must(t, "convert", set, long); !strings.Contains(said, "36 takes") {
+		t.Errorf("convert says %q of 36 takes", said)
+	}
+}

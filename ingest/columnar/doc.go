@@ -28,7 +28,7 @@
 // its Arrow field under the key unit or units, which Parquet files keep under
 // the key ARROW:schema. A file with the metadata key strandwise.layout is part
 // of a set that this program wrote: its channels, quantities, units and groups
-// are those the layout states, and its synthetic takes are read like recorded ones.
+// are those the layout states, and its synthetic takes are marked as such.
 //
 // Memory: Parquet is read page by page and Arrow batch by batch, so reading
 // takes one page of each column, or one batch, and one take.

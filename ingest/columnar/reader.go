@@ -24,7 +24,6 @@ type reader struct {
 
 	columns []vector // the rows at hand
 	row     int      // number in the file, from 1, of the first row at hand
-	told    bool     // of synthetic takes
 
 	// Of the long form.
 	take   *raw.Take // being read, nil before the first row

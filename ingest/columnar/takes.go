@@ -36,7 +36,7 @@ func (d *reader) readTake(int) error {
 	if err := d.readChannels(t, frames); err != nil {
 		return err
 	}
-	d.tellSynthetic(id.Take)
+	t.Synthetic = d.origin != none && d.columns[d.origin].texts[0] == string(channels.Synthetic)
 	d.take = nil
 	return d.deliver(t)
 }
@@ -111,13 +111,4 @@ func (d *reader) readChannels(t *raw.Take, frames int) error {
 		return nil
 	}
 	return d.refuseInfinity(t, 0, func(i int) string { return fmt.Sprintf("row %d, value %d: ", d.row, i+1) })
-}
-
-// tellSynthetic says once that synthetic takes are read.
-func (d *reader) tellSynthetic(take string) {
-	if d.told || d.origin == none || d.columns[d.origin].texts[0] != string(channels.Synthetic) {
-		return
-	}
-	d.told = true
-	d.in.Notice("holds synthetic takes, which are read like recorded ones", "the first is "+take)
 }

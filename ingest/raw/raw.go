@@ -77,6 +77,7 @@ type Take struct {
 	Time   []float64
 	Data   []float64 // frames × channels, frame-major, as recorded; NaN where a value is missing
 
+	Synthetic   bool           // the file says that the take was made, not recorded
 	Skeleton    *body.Skeleton // whose joints the channels are, nil when the file has none; shared and read-only
 	Annotations []Annotation   // what the file says happened when, by start
 }
