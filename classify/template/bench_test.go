@@ -49,7 +49,8 @@ func walks(n, frames, width int, noise float64) []*channels.Take {
 
 // The benchmarks hold 100 queries of 128 frames against 100 templates. Times are
 // of the process, all included: preparing the queries, preparing the templates,
-// and the search. cells/s are those of the full band, computed or not. Run with
+// and the search. cells/s are those of the full band, computed or not; x-plain is
+// how many times faster than the plain code that is. Run with
 //
 //	go test ./classify/template -bench . -benchtime 1s -run '^$'
 const (
@@ -93,10 +94,22 @@ func BenchmarkSearch(b *testing.B) {
 			for b.Loop() {
 				counts = searchOnce(b, metric, takes)
 			}
-			report(b, metric, float64(processTime()-start))
+			ns := float64(processTime() - start)
+			report(b, metric, ns)
 			reportCounts(b, metric, counts)
+			if c.distance == template.DTWDependent {
+				b.ReportMetric(plainTime(metric, takes)*float64(b.N*benchQueries)/ns, "x-plain")
+			}
 		})
 	}
+}
+
+// plainTime returns the nanoseconds a query takes the plain code, of ten.
+func plainTime(m template.Metric, takes []*channels.Take) float64 {
+	const queries = 10
+	start := processTime()
+	plainSearch(m, takes[:benchTemplates+queries])
+	return float64(processTime()-start) / queries
 }
 
 // searchOnce searches, and returns what was done.

@@ -38,7 +38,10 @@ func (w *Worker) distance(a, b *series, bound float64) float64 {
 func (w *Worker) limit(p *part, bound, left float64) float64 {
 	left, margin := left/p.weight, 1e-6*bound/p.weight
 	if w.roots {
-		return left*left + margin*margin
+		return left*left + margin*margin + tiny
 	}
-	return left + 1e-6*margin
+	return left + 1e-6*margin + tiny + tiny/p.weight
 }
+
+// tiny is what rounding adds to the smallest of numbers, or takes off them.
+const tiny = 2 * math.SmallestNonzeroFloat64

@@ -44,6 +44,10 @@ func TestMetricValidate(t *testing.T) {
 		{template.Metric{Distance: template.DTWDependent, Band: math.NaN()}, "band NaN"},
 		{template.Metric{Distance: template.DTWDependent, Length: 1}, "length 1"},
 		{template.Metric{Distance: template.DTWDependent, Length: -5}, "length -5"},
+		{template.Metric{Distance: template.DTWDependent, Weights: map[string]float64{"left": 0, "right": 1e6}}, ""},
+		{template.Metric{Distance: template.DTWDependent, Weights: map[string]float64{"left": -1}}, "weight -1 of group left"},
+		{template.Metric{Distance: template.DTWDependent, Weights: map[string]float64{"left": math.Inf(1)}}, "weight +Inf of group left"},
+		{template.Metric{Distance: template.DTWDependent, Weights: map[string]float64{"left": math.NaN()}}, "weight NaN of group left"},
 	} {
 		err := c.metric.Validate()
 		if (err == nil) != (c.fault == "") || err != nil && !strings.Contains(err.Error(), c.fault) {
@@ -133,6 +137,82 @@ func TestZScore(t *testing.T) {
 		m := template.Metric{Distance: template.EuclideanDependent, Normalise: template.ZScore}
 		if got := between(t, m, a, c.b); math.Abs(got-c.want) > tolerance {
 			t.Errorf("distance of a and %s is %g, want %g", c.b.ID, got, c.want)
+		}
+	}
+}
+
+// handLayout has two groups: a hand of two channels, and a trunk of one.
+func handLayout() *channels.Layout {
+	l := layoutOf(3)
+	l.Groups = []channels.Group{{Name: "hand", Limb: "hand", Channels: []int{0, 1}}, {Name: "trunk", Limb: "trunk", Channels: []int{2}}}
+	return l
+}
+
+// TestGroupScale compares takes that differ by offsets and one scale per group:
+// they are alike, and with another ratio of axes they are not.
+func TestGroupScale(t *testing.T) {
+	const tolerance = 1e-12
+	l := handLayout()
+	a := take("a", l, []float64{0, 0, 1, 1, 2, 1, 2, 4, 1})
+	scaled := take("scaled", l, []float64{7, 1, 10, 10, 7, 10, 13, 13, 10})
+	stretched := take("stretched", l, []float64{0, 0, 1, 1, 0, 1, 2, 0, 1})
+	m := template.Metric{Distance: template.EuclideanDependent, Normalise: template.GroupScale}
+	if got := between(t, m, a, scaled); got > tolerance {
+		t.Errorf("with another scale per group the distance is %g, want 0", got)
+	}
+	// Centred, a's hand moves by (−1, −2), (0, 0), (1, 2): mean variance 10/6.
+	// The other's moves by (−1, 0), (0, 0), (1, 0): mean variance 2/6. Nothing
+	// changes in the trunk.
+	x, y := math.Sqrt(6/10.0), math.Sqrt(6/2.0)
+	if got, want := between(t, m, a, stretched), math.Sqrt(2*((x-y)*(x-y)+4*x*x)); math.Abs(got-want) > tolerance {
+		t.Errorf("with another ratio of axes the distance is %g, want %g", got, want)
+	}
+}
+
+// TestWeights holds weighted distances against values worked out by hand.
+func TestWeights(t *testing.T) {
+	const tolerance = 1e-12
+	l := handLayout()
+	a := take("a", l, []float64{0, 0, 0, 1, 0, 0, 2, 0, 1})
+	b := take("b", l, []float64{3, 4, 2, 1, 0, 0, 2, 0, 1})
+	turned := take("turned", l, []float64{0, 0, 0, 0, 1, 0, 0, 2, -1})
+	for _, c := range []struct {
+		distance template.Distance
+		b        *channels.Take
+		weights  map[string]float64
+		want     float64
+	}{
+		{template.EuclideanDependent, b, nil, math.Sqrt(29)},
+		{template.EuclideanDependent, b, map[string]float64{"hand": 1, "trunk": 1}, 5 + 2},
+		{template.EuclideanDependent, b, map[string]float64{"hand": 3}, 15 + 2},
+		{template.EuclideanDependent, b, map[string]float64{"hand": 0, "trunk": 0.5}, 1},
+		{template.EuclideanIndependent, b, map[string]float64{"hand": 3, "trunk": 0.5}, 3*(3+4) + 1},
+		{template.DTWDependent, b, map[string]float64{"hand": 3, "trunk": 0.5}, 3*25 + 2},
+		{template.DTWIndependent, b, map[string]float64{"hand": 3, "trunk": 0.5}, 3*(3+4) + 1},
+		{template.DirectionCosine, turned, nil, (1 + 2) / 2.0},
+		{template.DirectionCosine, turned, map[string]float64{"hand": 3, "trunk": 0.5}, 3*1 + 0.5*2},
+	} {
+		m := template.Metric{Distance: c.distance, Weights: c.weights}
+		if got := between(t, m, a, c.b); math.Abs(got-c.want) > tolerance {
+			t.Errorf("%s with weights %v is %g, want %g", c.distance, c.weights, got, c.want)
+		}
+	}
+}
+
+func TestWeightsRefused(t *testing.T) {
+	for _, c := range []struct {
+		layout  *channels.Layout
+		weights map[string]float64
+		fault   string
+	}{
+		{handLayout(), map[string]float64{"foot": 2}, `weight of group "foot", which the channels do not have; their groups are hand, trunk`},
+		{layoutOf(3), map[string]float64{"hand": 2}, "the channels have no groups"},
+		{handLayout(), map[string]float64{"hand": 0, "trunk": 0}, "every group has weight 0"},
+	} {
+		a := []*channels.Take{take("a", c.layout, []float64{0, 0, 0, 1, 1, 1})}
+		_, err := template.NewSearch(template.Metric{Distance: template.DTWDependent, Weights: c.weights}, a, a)
+		if err == nil || !strings.Contains(err.Error(), c.fault) {
+			t.Errorf("weights %v: error %v, want %q", c.weights, err, c.fault)
 		}
 	}
 }

@@ -244,8 +244,11 @@ func TestWalks(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			if err := s.Worker().Offer(block); err != nil {
-				t.Fatal(err)
+			w := s.Worker()
+			for part := range slices.Chunk(block, 7) {
+				if err := w.Offer(part); err != nil {
+					t.Fatal(err)
+				}
 			}
 			for q, query := range takes[24:] {
 				recorded, all := s.Nearest(q)
@@ -337,6 +340,32 @@ func checkTie(t *testing.T, m template.Metric, query, same *channels.Take, order
 	}
 }
 
+// TestLostSquares compares takes so small that the square of what they differ by
+// is no number: they are equally far, and bounds must not say otherwise.
+func TestLostSquares(t *testing.T) {
+	const unit = 0x1p-538
+	l := layoutOf(1)
+	data := make([]float64, 40)
+	for i := range data {
+		data[i] = float64(i%7) * unit
+	}
+	off := slices.Clone(data)
+	off[20] += unit
+	same, near := take("same", l, data), take("near", l, off)
+	for _, distance := range []template.Distance{template.DTWDependent, template.DTWIndependent} {
+		s, err := template.NewSearch(template.Metric{Distance: distance, Band: 0.1}, []*channels.Take{same, near}, []*channels.Take{same})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := s.Worker().Offer([]template.Template{{Take: same, Order: 1}, {Take: near, Order: 0}}); err != nil {
+			t.Fatal(err)
+		}
+		if _, all := s.Nearest(0); all.Order != 0 {
+			t.Errorf("%s: nearest is %v, want template 0", distance, all)
+		}
+	}
+}
+
 func TestNothingOffered(t *testing.T) {
 	l := layoutOf(1)
 	a := take("a", l, []float64{0, 1})
@@ -392,24 +421,30 @@ func TestSearchRefuses(t *testing.T) {
 // TestNoAllocationPerPair offers a block again: the worker has all it needs.
 func TestNoAllocationPerPair(t *testing.T) {
 	takes := walks(24, 40, 6, 1)
+	takes[0].Layout.Groups = []channels.Group{{Name: "left", Channels: []int{0, 1, 2}}, {Name: "right", Channels: []int{3, 4, 5}}}
 	block := make([]template.Template, 12)
 	for i := range block {
 		block[i] = template.Template{Take: takes[i], Order: i}
 	}
 	for _, distance := range template.Distances() {
-		s, err := template.NewSearch(template.Metric{Distance: distance, Normalise: template.ZScore, Band: 0.2}, takes[:12], takes[12:])
-		if err != nil {
-			t.Fatal(err)
-		}
-		w := s.Worker()
-		offer := func() {
-			if err := w.Offer(block); err != nil {
-				t.Fatal(err)
+		for _, normalise := range template.Normalisations() {
+			for _, weights := range []map[string]float64{nil, {"left": 2}} {
+				m := template.Metric{Distance: distance, Normalise: normalise, Band: 0.2, Weights: weights}
+				s, err := template.NewSearch(m, takes[:12], takes[12:])
+				if err != nil {
+					t.Fatal(err)
+				}
+				w := s.Worker()
+				offer := func() {
+					if err := w.Offer(block); err != nil {
+						t.Fatal(err)
+					}
+				}
+				offer()
+				if n := testing.AllocsPerRun(3, offer); n > 0 {
+					t.Errorf("%s of %s, weights %v: %g allocations for a block offered again, want none", distance, normalise, weights, n)
+				}
 			}
-		}
-		offer()
-		if n := testing.AllocsPerRun(3, offer); n > 0 {
-			t.Errorf("%s: %g allocations for a block offered again, want none", distance, n)
 		}
 	}
 }
