@@ -87,7 +87,7 @@ func checkClock(t *channels.Take) error {
 			return fmt.Errorf("frame %d: time %g s does not come after the frame before", i, at)
 		}
 		if i > 0 && float32(at-t.Time[0]) <= float32(t.Time[i-1]-t.Time[0]) {
-			return fmt.Errorf("frame %d comes %g s after the frame before, which 32-bit floats cannot tell %g s from the start of the take; cut it into shorter takes", i, at-t.Time[i-1], at-t.Time[0])
+			return fmt.Errorf("frame %d comes %.3g s after the frame before, which 32-bit floats cannot tell %.4g s from the start of the take; cut it into shorter takes", i, at-t.Time[i-1], at-t.Time[0])
 		}
 	}
 	return nil

@@ -257,7 +257,7 @@ func TestAddRefuses(t *testing.T) {
 		{"text", func(t *channels.Take) { t.Label = "\xff" }, "not UTF-8"},
 		{"time back", func(t *channels.Take) { t.Time[3] = t.Time[2] }, "frame 3: time"},
 		{"time unknown", func(t *channels.Take) { t.Time[19] = math.NaN() }, "frame 19: time"},
-		{"time too fine", func(t *channels.Take) { t.Time[3] = t.Time[2] + 1e-12 }, "frame 3 comes 1e-12 s after"},
+		{"time too fine", func(t *channels.Take) { t.Time[3] = t.Time[2] + 1e-12 }, "which 32-bit floats cannot tell"},
 		{"not a number", func(t *channels.Take) { t.Data[6*4+2] = math.NaN() }, "frame 4: channel left_wrist.accel.z: NaN is not a 32-bit float"},
 		{"too large", func(t *channels.Take) { t.Data[3] = -1e39 }, "frame 0: channel left_wrist.gyro.x: -1e+39 is not"},
 		{"made for testing", func(t *channels.Take) { t.Split, t.Made = channels.Test, &channels.Making{Source: "a"} }, "a synthetic take cannot be in the split test"},
