@@ -1,10 +1,12 @@
 package c3d
 
 import (
+	"cmp"
 	"fmt"
 	"io"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 
 	"strandwise/channels"
@@ -68,13 +70,33 @@ func (f Format) take(r io.Reader, in raw.Input) (*raw.Take, error) {
 	if err != nil {
 		return nil, err
 	}
-	if len(file.Events) > 0 {
-		notice("marks events, which are not part of the take", file.Events[0].Label)
-	}
+	var t *raw.Take
 	if points {
-		return file.pointTake(in.Name, notice)
+		t, err = file.pointTake(in.Name, notice)
+	} else {
+		t, err = file.analogTake(in.Name, notice)
 	}
-	return file.analogTake(in.Name, notice)
+	if err != nil {
+		return nil, err
+	}
+	if t.Annotations = file.annotations(); len(t.Annotations) > 0 {
+		first := t.Annotations[0]
+		notice("marks events, which are kept as annotations of an instant and cut nothing", fmt.Sprintf("%d of them, the first is %s at %.4g s", len(t.Annotations), first.Label, first.Start))
+	}
+	return t, nil
+}
+
+// annotations returns the events in order of time, each an instant on the clock
+// of the takes, which begins at the first frame. What context an event has,
+// such as a side, stands before its label.
+func (f *File) annotations() []raw.Annotation {
+	var out []raw.Annotation
+	for _, e := range f.Events {
+		label := strings.TrimSpace(e.Context + " " + e.Label)
+		out = append(out, raw.Annotation{Start: e.Time, End: e.Time, Label: label, Subject: e.Subject})
+	}
+	slices.SortStableFunc(out, func(a, b raw.Annotation) int { return cmp.Compare(a.Start, b.Start) })
+	return out
 }
 
 func (f *File) pointTake(name string, notice func(text, evidence string)) (*raw.Take, error) {

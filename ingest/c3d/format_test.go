@@ -49,7 +49,7 @@ func TestPointTake(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	want := &raw.Take{Layout: &raw.Layout{}, Clock: raw.Seconds, Time: []float64{0, 0.01, 0.02}, Data: r.positions()}
+	want := &raw.Take{Layout: &raw.Layout{}, Clock: raw.Seconds, Time: []float64{0, 0.01, 0.02}, Data: r.positions(), Annotations: sampleEvents()}
 	for _, label := range r.labels {
 		for _, axis := range []string{"x", "y", "z"} {
 			want.Layout.Columns = append(want.Layout.Columns, raw.Column{
@@ -62,11 +62,21 @@ func TestPointTake(t *testing.T) {
 		t.Errorf("want, got:\n%s", diff)
 	}
 	wantNotices := []string{
-		"marks events, which are not part of the take: GO",
 		"has analog channels beside its points, which are not part of the take: Fx1",
+		"marks events, which are kept as annotations of an instant and cut nothing: 2 of them, the first is GO at 0.01 s",
 	}
 	if diff := cmp.Diff(wantNotices, notices); diff != "" {
 		t.Errorf("notices: want, got:\n%s", diff)
+	}
+}
+
+// sampleEvents are the events of the sample, whose times the file holds in
+// single precision.
+func sampleEvents() []raw.Annotation {
+	at := func(s float32) float64 { return float64(s) }
+	return []raw.Annotation{
+		{Start: at(0.01), End: at(0.01), Label: "GO"},
+		{Start: at(0.02), End: at(0.02), Label: "Left Grip", Subject: "P1"},
 	}
 }
 
@@ -84,6 +94,8 @@ func TestAnalogTake(t *testing.T) {
 		Clock: raw.Seconds,
 		Time:  []float64{0, 0.005, 0.01, 0.015, 0.02, 0.025},
 		Data:  []float64{0, 2, 1, 4, 2, 6, 3, 8, 4, 10, 5, 12}, // (stored - offset) · scale · 2
+
+		Annotations: sampleEvents(),
 	}
 	if diff := cmp.Diff(want, take, cmpopts.EquateApprox(0, 1e-12)); diff != "" {
 		t.Errorf("want, got:\n%s", diff)
