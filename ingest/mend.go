@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"strandwise/ingest/clock"
 	"strandwise/ingest/fault"
@@ -61,8 +62,9 @@ func (p *pass) mend(t *raw.Take, s source) ([]piece, error) {
 		return []piece{{Take: t}}, nil
 	}
 	width := len(p.r.frame.layout.Channels)
-	if i := infinite(t.Data); i >= 0 {
-		return nil, p.place(&trouble{frame: i / width, channel: i % width, problem: "is not a finite number", remedy: "repair the value, or leave the take out"}, t, s)
+	isInfinite := func(v float64) bool { return math.IsInf(v, 0) }
+	if i := slices.IndexFunc(t.Data, isInfinite); i >= 0 {
+		return nil, p.place(infinite(i, width), t, s)
 	}
 	done, err := clock.Repair(clock.Series{Time: t.Time, Data: t.Data, Width: width}, o.options())
 	var refused *clock.Refusal
@@ -130,7 +132,7 @@ func unsound(t *raw.Take, longest int) *trouble {
 			return &trouble{i / width, i % width, "has no value (an empty field, NaN or the like)", fmt.Sprintf("leave the take out, or allow --repair clock, which fills up to %s", frames(longest))}
 		}
 		if math.IsInf(v, 0) {
-			return &trouble{i / width, i % width, "is not a finite number", "repair the value, or leave the take out"}
+			return infinite(i, width)
 		}
 	}
 	for i := 1; i < len(t.Time); i++ {
@@ -165,13 +167,9 @@ func refusal(r *clock.Refusal) *trouble {
 	return e
 }
 
-func infinite(data []float64) int {
-	for i, v := range data {
-		if math.IsInf(v, 0) {
-			return i
-		}
-	}
-	return -1
+// infinite is the trouble with value i of a take that is no finite number.
+func infinite(i, width int) *trouble {
+	return &trouble{i / width, i % width, "is not a finite number", "repair the value, or leave the take out"}
 }
 
 func frames(n int) string {
@@ -195,7 +193,7 @@ type Repairs struct {
 	Sorted     int `json:"frames_sorted"`      // that came before the frame above
 	Merged     int `json:"frames_merged"`      // into another of the same time
 	Moved      int `json:"frames_moved"`       // further than a thousandth of a step
-	Gaps       int `json:"gaps_filled"`        //
+	Gaps       int `json:"gaps_filled"`        // no longer than allowed
 	Made       int `json:"frames_made"`        // to fill them
 	Values     int `json:"values_filled"`      // in frames that lacked some channels
 	LeftOut    int `json:"frames_left_out"`    // outside of all pieces

@@ -28,8 +28,8 @@ func newVerify(s Streams) *cobra.Command {
 			} else {
 				printVerified(s, args[0], v)
 			}
-			if n := len(v.Problems); n > 0 {
-				return fmt.Errorf("%s does not hold against its manifest: %d problems", args[0], n)
+			if !v.Sound() {
+				return fmt.Errorf("%s does not hold against its manifest: %s", args[0], count(len(v.Problems), "problem"))
 			}
 			return nil
 		}),
@@ -42,7 +42,7 @@ func printVerified(s Streams, dir string, v *export.Verification) {
 	for _, p := range v.Problems {
 		fmt.Fprintln(s.Out, p)
 	}
-	if len(v.Problems) == 0 {
+	if v.Sound() {
 		fmt.Fprintf(s.Out, "%s is as it was sealed: %d files, %d takes\n", dir, v.Files, v.Takes)
 	}
 }
