@@ -67,7 +67,7 @@ func wander(l *channels.Layout, id string, frames int, seed uint64) *channels.Ta
 // maker measures the takes and returns a maker for them.
 func maker(t testing.TB, v augment.Variation, seed uint64, takes ...*channels.Take) *augment.Maker {
 	t.Helper()
-	scales := new(augment.Scales)
+	scales := new(channels.Scales)
 	for _, take := range takes {
 		scales.Add(take)
 	}

@@ -30,7 +30,7 @@ func swing() *channels.Take {
 // timing.
 func ExampleMaker() {
 	take := swing()
-	scales := new(augment.Scales)
+	scales := new(channels.Scales)
 	scales.Add(take)
 	variation := augment.Variation{Method: augment.TimedPath, Knots: 4, Spread: 0.05, TimeShare: 0.5, Coupling: 1}
 	maker, err := augment.NewMaker(variation, scales, 1)
@@ -57,7 +57,7 @@ func ExampleMaker() {
 // workers; the order is the same with any number.
 func ExampleGrow() {
 	take := swing()
-	scales := new(augment.Scales)
+	scales := new(channels.Scales)
 	scales.Add(take)
 	maker, err := augment.NewMaker(augment.Default(augment.TimedPath), scales, 1)
 	if err != nil {

@@ -10,13 +10,13 @@ import (
 // Maker makes synthetic takes. It is safe for use by several goroutines.
 type Maker struct {
 	variation Variation
-	scales    *Scales
+	scales    *channels.Scales
 	seed      uint64
 }
 
 // NewMaker returns a maker of takes that vary as v says. The scales must have
 // been measured on training takes alone and are not changed any more.
-func NewMaker(v Variation, scales *Scales, seed uint64) (*Maker, error) {
+func NewMaker(v Variation, scales *channels.Scales, seed uint64) (*Maker, error) {
 	if err := v.Validate(); err != nil {
 		return nil, err
 	}
@@ -79,23 +79,6 @@ func (m *Maker) limbIntervals(t *channels.Take, draw, n int) map[string][]float6
 	for _, limb := range t.Layout.Limbs() {
 		own := path.Gaussians(make([]float64, n-1), Generator(m.seed, t.ID, draw, limb))
 		out[limb] = path.CoupledIntervals(own, m.variation.Spread, m.variation.Coupling, shared, own)
-	}
-	return out
-}
-
-// scaled returns the take's values with each group divided by its size, so
-// that groups of different units weigh alike in an arc length.
-func (m *Maker) scaled(t *channels.Take) []float64 {
-	w := t.Width()
-	inverse := make([]float64, w)
-	for g, group := range t.Layout.Groups {
-		for _, c := range group.Channels {
-			inverse[c] = 1 / m.scales.RMS(g)
-		}
-	}
-	out := make([]float64, len(t.Data))
-	for i, v := range t.Data {
-		out[i] = v * inverse[i%w]
 	}
 	return out
 }

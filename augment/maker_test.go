@@ -94,7 +94,7 @@ func TestDrawsAreSound(t *testing.T) {
 		if v.Method == augment.Path && rapid.Bool().Draw(t, "regression") {
 			v.Knots = 0
 		}
-		scales := new(augment.Scales)
+		scales := new(channels.Scales)
 		scales.Add(take)
 		m, err := augment.NewMaker(v, scales, rapid.Uint64().Draw(t, "seed"))
 		if err != nil {

@@ -22,7 +22,7 @@ type pathSource struct {
 func newPathSource(m *Maker, t *channels.Take) *pathSource {
 	s := &pathSource{maker: m, take: t, time: evenClock(t.Time), knots: m.variation.Knots}
 	if s.knots == 0 {
-		whole := path.NewArc(m.scaled(t), t.Width())
+		whole := path.NewArc(m.scales.Apply(t), t.Width())
 		s.knots = int(math.Round(min(max(whole.Knots(), 3), max(float64(t.Frames()), 3))))
 	}
 	for _, g := range t.Layout.Groups {

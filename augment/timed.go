@@ -23,7 +23,7 @@ type timedSource struct {
 }
 
 func newTimedSource(m *Maker, t *channels.Take) *timedSource {
-	arc := path.NewArc(m.scaled(t), t.Width())
+	arc := path.NewArc(m.scales.Apply(t), t.Width())
 	s := &timedSource{
 		maker: m, take: t,
 		samples: path.Samples{Time: t.Time, Values: t.Data, Width: t.Width()},

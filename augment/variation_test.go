@@ -8,6 +8,7 @@ import (
 
 	"strandwise/augment"
 	"strandwise/augment/path"
+	"strandwise/channels"
 )
 
 func TestVariationValidate(t *testing.T) {
@@ -61,7 +62,7 @@ func TestVariationValidate(t *testing.T) {
 		if err != nil && (!errors.As(err, &outside) || !strings.HasPrefix(err.Error(), outside.Field+" "+outside.Problem)) {
 			t.Errorf("%s: %#v does not tell the field", c.name, err)
 		}
-		if _, made := augment.NewMaker(c.v, new(augment.Scales), 1); (made == nil) != (err == nil) {
+		if _, made := augment.NewMaker(c.v, new(channels.Scales), 1); (made == nil) != (err == nil) {
 			t.Errorf("%s: NewMaker says %v, Validate %v", c.name, made, err)
 		}
 	}

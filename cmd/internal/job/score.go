@@ -112,7 +112,7 @@ func (p *Plan) methods() ([]classify.Method, error) {
 // of training takes.
 func (p *Plan) method(v augment.Variation) classify.Method {
 	return classify.Method{Name: string(v.Method), Fit: func(training []*channels.Take) (classify.Maker, error) {
-		scales := new(augment.Scales)
+		scales := new(channels.Scales)
 		for _, t := range training {
 			scales.Add(t)
 		}

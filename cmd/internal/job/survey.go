@@ -4,7 +4,6 @@ import (
 	"context"
 	"slices"
 
-	"strandwise/augment"
 	"strandwise/channels"
 	"strandwise/classify"
 )
@@ -16,7 +15,7 @@ type survey struct {
 	takes    int
 	training int
 	frames   int
-	scales   augment.Scales   // of the training takes
+	scales   channels.Scales  // of the training takes
 	sample   *classify.Sample // to score on
 	rest     *classify.Sample // of takes that are no gesture
 }

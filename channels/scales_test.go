@@ -1,17 +1,20 @@
-package augment_test
+package channels_test
 
 import (
 	"math"
 	"testing"
 
-	"strandwise/augment"
 	"strandwise/channels"
 )
 
 // twoGroups is a layout of a two-channel group and a one-channel group.
 func twoGroups(t *testing.T) *channels.Layout {
 	l := &channels.Layout{Channels: []channels.Channel{{Name: "a"}, {Name: "b"}, {Name: "c"}}}
-	return grouped(t, l, channels.Group{Name: "ab", Channels: []int{0, 1}}, channels.Group{Name: "c", Channels: []int{2}})
+	l, err := l.WithGroups([]channels.Group{{Name: "ab", Channels: []int{0, 1}}, {Name: "c", Channels: []int{2}}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return l
 }
 
 func values(l *channels.Layout, data ...float64) *channels.Take {
@@ -41,7 +44,7 @@ func TestScalesKnownValues(t *testing.T) {
 		{"constant off zero", []*channels.Take{constant(l, 10, 0.1)}, [2]float64{1, 1}},
 		{"too small to square", []*channels.Take{values(l, 0, 0, 0, 1e-170, 0, 1e-162)}, [2]float64{1, 1}},
 	} {
-		s := new(augment.Scales)
+		s := new(channels.Scales)
 		for _, take := range c.takes {
 			s.Add(take)
 		}

@@ -1,10 +1,6 @@
-package augment
+package channels
 
-import (
-	"math"
-
-	"strandwise/channels"
-)
+import "math"
 
 // Scales measures how large each channel group's movement is over many takes:
 // the root mean square of its values with each take's mean removed, pooled.
@@ -16,7 +12,7 @@ type Scales struct {
 }
 
 // Add counts one take in.
-func (s *Scales) Add(t *channels.Take) {
+func (s *Scales) Add(t *Take) {
 	if s.squares == nil {
 		s.squares = make([]float64, len(t.Layout.Groups))
 		s.counts = make([]float64, len(t.Layout.Groups))
@@ -41,10 +37,27 @@ func (s *Scales) RMS(g int) float64 {
 	return 1
 }
 
+// Apply returns the take's values, frames × channels, with each group divided
+// by its size, so that groups of different units weigh alike.
+func (s *Scales) Apply(t *Take) []float64 {
+	w := t.Width()
+	inverse := make([]float64, w)
+	for g, group := range t.Layout.Groups {
+		for _, c := range group.Channels {
+			inverse[c] = 1 / s.RMS(g)
+		}
+	}
+	out := make([]float64, len(t.Data))
+	for i, v := range t.Data {
+		out[i] = v * inverse[i%w]
+	}
+	return out
+}
+
 // centredSquares returns the sum of squares of one channel about its mean. It
 // counts from the first frame's value, so that a channel that never moves
 // gives 0 exactly, whatever its value.
-func centredSquares(t *channels.Take, c int) float64 {
+func centredSquares(t *Take, c int) float64 {
 	w, first := t.Width(), t.Data[c]
 	mean := 0.0
 	for i := c; i < len(t.Data); i += w {
