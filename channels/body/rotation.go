@@ -113,3 +113,11 @@ func Unwrap(qs []quat.Number, stride int) {
 		before = qs[i]
 	}
 }
+
+// Between returns the rotation vector in radians, the shorter way round, that
+// leads from p to q in the frame that p has turned: log(p⁻¹ q).
+func Between(p, q quat.Number) r3.Vec { return Log(quat.Mul(quat.Conj(p), q)) }
+
+// After returns p followed by the turn of a rotation vector in the frame that p
+// has turned: p exp(v). It undoes [Between].
+func After(p quat.Number, v r3.Vec) quat.Number { return Unit(quat.Mul(p, Exp(v))) }
