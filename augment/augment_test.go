@@ -64,18 +64,33 @@ func wander(l *channels.Layout, id string, frames int, seed uint64) *channels.Ta
 	return t
 }
 
-// maker measures the takes and returns a maker for them.
+// training is what can be known of these takes without measuring them.
+func training(takes ...*channels.Take) augment.Training {
+	t := augment.Training{Scales: new(channels.Scales), Takes: takes}
+	for _, take := range takes {
+		t.Scales.Add(take)
+	}
+	return t
+}
+
+// maker returns a maker that knows the takes.
 func maker(t testing.TB, v augment.Variation, seed uint64, takes ...*channels.Take) *augment.Maker {
 	t.Helper()
-	scales := new(channels.Scales)
-	for _, take := range takes {
-		scales.Add(take)
-	}
-	m, err := augment.NewMaker(v, scales, seed)
+	m, err := augment.NewMaker(v, training(takes...), seed)
 	if err != nil {
 		t.Fatal(err)
 	}
 	return m
+}
+
+// source makes the first of the takes ready, with a maker that knows them all.
+func source(t testing.TB, v augment.Variation, seed uint64, takes ...*channels.Take) *augment.Source {
+	t.Helper()
+	s, err := maker(t, v, seed, takes...).Source(takes[0])
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
 }
 
 // stream yields copies of the takes, as a reader hands over takes of its own.

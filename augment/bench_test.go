@@ -16,11 +16,11 @@ import (
 // BenchmarkDraw measures one synthetic take, from its generators to its
 // frames, of a source that was made ready before.
 func BenchmarkDraw(b *testing.B) {
-	for _, method := range augment.Methods() {
+	for _, method := range []augment.Method{augment.Recipe, augment.Path} {
 		for _, size := range []struct{ frames, sensors int }{{64, 1}, {128, 2}, {128, 25}} {
 			layout := sensorLayout(b, size.sensors)
 			take := wander(layout, "bench", size.frames, 1)
-			source := maker(b, augment.Default(method), 1, take).Source(take)
+			source := source(b, augment.Published(method), 1, take)
 			name := fmt.Sprintf("method=%s/frames=%d/channels=%d", method, size.frames, take.Width())
 			b.Run(name, func(b *testing.B) {
 				b.ReportAllocs()
@@ -44,13 +44,13 @@ func BenchmarkGrow(b *testing.B) {
 	for i := range takes {
 		takes[i] = wander(layout, fmt.Sprint("take", i), 128, uint64(i))
 	}
-	for _, method := range augment.Methods() {
-		m := maker(b, augment.Default(method), 1, takes...)
+	for _, method := range []augment.Method{augment.Recipe, augment.Path} {
+		m := maker(b, augment.Published(method), 1, takes...)
 		for _, workers := range []int{1, 2} {
 			b.Run(fmt.Sprintf("method=%s/workers=%d", method, workers), func(b *testing.B) {
 				made := 0
 				for b.Loop() {
-					for t, err := range augment.Grow(context.Background(), stream(takes...), m, perTake, workers) {
+					for t, err := range augment.Grow(context.Background(), stream(takes...), m, augment.GrowOptions{PerTake: perTake, Workers: workers}) {
 						if err != nil {
 							b.Fatal(err)
 						}

@@ -26,19 +26,21 @@ func swing() *channels.Take {
 	}
 }
 
-// Three synthetic takes from one recorded one, with a mild variation of their
-// timing.
+// Three synthetic takes from one recorded one, by the recipe.
 func ExampleMaker() {
 	take := swing()
-	scales := new(channels.Scales)
-	scales.Add(take)
-	variation := augment.Variation{Method: augment.TimedPath, Knots: 4, Spread: 0.05, TimeShare: 0.5, Coupling: 1}
-	maker, err := augment.NewMaker(variation, scales, 1)
+	training := augment.Training{Scales: new(channels.Scales), Takes: []*channels.Take{take}}
+	training.Scales.Add(take)
+	maker, err := augment.NewMaker(augment.Default(), training, 1)
 	if err != nil {
 		fmt.Println(err)
 		return
 	}
-	source := maker.Source(take)
+	source, err := maker.Source(take)
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
 	for k := range 3 {
 		made := source.Draw(k)
 		fmt.Printf("%s, %s, from %s:", made.ID, made.Origin(), made.Made.Source)
@@ -48,24 +50,24 @@ func ExampleMaker() {
 		fmt.Println(" m")
 	}
 	// Output:
-	// swing 1~0, synthetic, from swing 1:  0.00  0.04  0.18  0.21  0.09  0.00 m
-	// swing 1~1, synthetic, from swing 1:  0.00  0.08  0.21  0.16  0.06  0.00 m
-	// swing 1~2, synthetic, from swing 1:  0.00  0.11  0.19  0.16  0.07  0.00 m
+	// swing 1~0, synthetic, from swing 1:  0.03  0.05  0.18  0.18  0.09  0.00 m
+	// swing 1~1, synthetic, from swing 1: -0.06  0.04  0.33  0.24  0.06 -0.01 m
+	// swing 1~2, synthetic, from swing 1:  0.00  0.08  0.16  0.19  0.11  0.03 m
 }
 
 // A stream of recordings grows by two synthetic takes each, made on two
 // workers; the order is the same with any number.
 func ExampleGrow() {
 	take := swing()
-	scales := new(channels.Scales)
-	scales.Add(take)
-	maker, err := augment.NewMaker(augment.Default(augment.TimedPath), scales, 1)
+	training := augment.Training{Scales: new(channels.Scales), Takes: []*channels.Take{take}}
+	training.Scales.Add(take)
+	maker, err := augment.NewMaker(augment.Default(), training, 1)
 	if err != nil {
 		fmt.Println(err)
 		return
 	}
 	recorded := func(yield func(*channels.Take, error) bool) { yield(take, nil) }
-	for t, err := range augment.Grow(context.Background(), recorded, maker, 2, 2) {
+	for t, err := range augment.Grow(context.Background(), recorded, maker, augment.GrowOptions{PerTake: 2, Workers: 2}) {
 		if err != nil {
 			fmt.Println(err)
 			return
@@ -74,6 +76,6 @@ func ExampleGrow() {
 	}
 	// Output:
 	// swing 1: recorded, 6 frames, 0.5 s
-	// swing 1~0: synthetic, 6 frames, 0.5 s
 	// swing 1~1: synthetic, 6 frames, 0.5 s
+	// swing 1~0: synthetic, 6 frames, 0.5 s
 }

@@ -6,7 +6,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sync"
 	"testing"
 	"testing/synctest"
 
@@ -54,9 +53,11 @@ func grown(m *augment.Maker, takes []*channels.Take, perTake int) []*channels.Ta
 		if take.Split == channels.Test {
 			continue
 		}
-		for k := range perTake {
-			out = append(out, m.Source(take).Draw(k))
+		made, err := m.Make(take, perTake)
+		if err != nil {
+			panic(err)
 		}
+		out = append(out, made...)
 	}
 	return out
 }
@@ -68,7 +69,7 @@ func TestGrowOrderAndContentsForAnyWorkers(t *testing.T) {
 		for _, perTake := range []int{0, 1, 5} {
 			want := grown(m, takes, perTake)
 			for _, workers := range []int{-1, 1, 2, 7} {
-				got, err := collect(t, augment.Grow(context.Background(), stream(takes...), m, perTake, workers))
+				got, err := collect(t, augment.Grow(context.Background(), stream(takes...), m, augment.GrowOptions{PerTake: perTake, Workers: workers}))
 				if err != nil {
 					t.Fatal(err)
 				}
@@ -81,7 +82,7 @@ func TestGrowOrderAndContentsForAnyWorkers(t *testing.T) {
 }
 
 func TestGrowOfNothing(t *testing.T) {
-	got, err := collect(t, augment.Grow(context.Background(), stream(), maker(t, timed(), 1), 5, 2))
+	got, err := collect(t, augment.Grow(context.Background(), stream(), maker(t, augment.Default(), 1), augment.GrowOptions{PerTake: 5, Workers: 2}))
 	if len(got) != 0 || err != nil {
 		t.Errorf("%d takes, %v", len(got), err)
 	}
@@ -91,9 +92,9 @@ func TestGrowOfNothing(t *testing.T) {
 // read again.
 func TestGrowCanBeReadTwice(t *testing.T) {
 	takes := recordings(t, 4)
-	m := maker(t, timed(), 1, takes...)
+	m := maker(t, augment.Default(), 1, takes...)
 	synctest.Test(t, func(t *testing.T) {
-		s := augment.Grow(t.Context(), stream(takes...), m, 3, 2)
+		s := augment.Grow(t.Context(), stream(takes...), m, augment.GrowOptions{PerTake: 3, Workers: 2})
 		first, _ := collect(t, s)
 		second, _ := collect(t, s)
 		if diff := cmp.Diff(first, second); diff != "" || len(first) == 0 {
@@ -104,7 +105,7 @@ func TestGrowCanBeReadTwice(t *testing.T) {
 
 func TestGrowPassesAnErrorOnLast(t *testing.T) {
 	takes := recordings(t, 5)
-	m := maker(t, timed(), 1, takes...)
+	m := maker(t, augment.Default(), 1, takes...)
 	torn := errors.New("wave.csv:7: torn row")
 	broken := func(yield func(*channels.Take, error) bool) {
 		for _, take := range takes {
@@ -118,7 +119,7 @@ func TestGrowPassesAnErrorOnLast(t *testing.T) {
 	}
 	for _, workers := range []int{1, 2, 7} {
 		synctest.Test(t, func(t *testing.T) {
-			got, err := collect(t, augment.Grow(t.Context(), broken, m, 4, workers))
+			got, err := collect(t, augment.Grow(t.Context(), broken, m, augment.GrowOptions{PerTake: 4, Workers: workers}))
 			if !errors.Is(err, torn) {
 				t.Errorf("%d workers: error %v, want %v", workers, err, torn)
 			}
@@ -158,7 +159,7 @@ func TestGrowEndsWithItsReceiver(t *testing.T) {
 				synctest.Test(t, func(t *testing.T) {
 					c := &counter{take: wander(sensorLayout(t, 1), "", 20, 1)}
 					received := 0
-					for range augment.Grow(t.Context(), c.stream, maker(t, timed(), 1, c.take), perTake, workers) {
+					for range augment.Grow(t.Context(), c.stream, maker(t, augment.Default(), 1, c.take), augment.GrowOptions{PerTake: perTake, Workers: workers}) {
 						if received++; received == stop {
 							break
 						}
@@ -166,7 +167,7 @@ func TestGrowEndsWithItsReceiver(t *testing.T) {
 					if !c.ended {
 						t.Errorf("%d workers: the producer runs on", workers)
 					}
-					if ahead := c.yielded*(1+perTake) - received; ahead > 2*workers+2+perTake {
+					if ahead := c.yielded*(1+perTake) - received; ahead > (2*workers+2)*(1+perTake) {
 						t.Errorf("%d workers, %d per take: the producer was %d takes ahead", workers, perTake, ahead)
 					}
 				})
@@ -182,7 +183,7 @@ func TestGrowEndsWithItsContext(t *testing.T) {
 			defer cancel()
 			c := &counter{take: wander(sensorLayout(t, 1), "", 20, 1)}
 			received, fault := 0, error(nil)
-			for take, err := range augment.Grow(ctx, c.stream, maker(t, timed(), 1, c.take), 3, workers) {
+			for take, err := range augment.Grow(ctx, c.stream, maker(t, augment.Default(), 1, c.take), augment.GrowOptions{PerTake: 3, Workers: workers}) {
 				if fault != nil {
 					t.Errorf("something follows the error %v", fault)
 				}
@@ -204,7 +205,7 @@ func TestGrowOfACancelledContext(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
 	takes := recordings(t, 3)
-	_, err := collect(t, augment.Grow(ctx, stream(takes...), maker(t, timed(), 1, takes...), 3, 2))
+	_, err := collect(t, augment.Grow(ctx, stream(takes...), maker(t, augment.Default(), 1, takes...), augment.GrowOptions{PerTake: 3, Workers: 2}))
 	if !errors.Is(err, context.Canceled) {
 		t.Errorf("error %v, want %v", err, context.Canceled)
 	}
@@ -218,7 +219,7 @@ func TestGrowGivesTakesAway(t *testing.T) {
 		m := maker(t, v, 1, takes...)
 		want := grown(m, takes, 4)
 		k := 0
-		for got, err := range augment.Grow(context.Background(), stream(takes...), m, 4, 2) {
+		for got, err := range augment.Grow(context.Background(), stream(takes...), m, augment.GrowOptions{PerTake: 4, Workers: 2}) {
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -239,21 +240,38 @@ func TestGrowGivesTakesAway(t *testing.T) {
 	})
 }
 
-func TestSourceServesSeveralGoroutines(t *testing.T) {
-	eachMethod(t, func(t *testing.T, v augment.Variation) {
-		take := wander(sensorLayout(t, 2), "take", 40, 1)
-		source := maker(t, v, 1, take).Source(take)
-		want, got := make([]*channels.Take, 32), make([]*channels.Take, 32)
-		for k := range want {
-			want[k] = source.Draw(k)
+// What is kept is the best choice of what was made.
+func TestGrowKeepsTheBestChoice(t *testing.T) {
+	takes := recordings(t, 4)
+	m := maker(t, augment.Default(), 1, takes...)
+	all, _ := collect(t, augment.Grow(t.Context(), stream(takes...), m, augment.GrowOptions{PerTake: 8}))
+	var want []*channels.Take
+	for _, take := range all {
+		if take.Made == nil || take.Made.Rank < 3 {
+			want = append(want, take)
 		}
-		var running sync.WaitGroup
-		for k := range got {
-			running.Go(func() { got[k] = source.Draw(k) })
+	}
+	got, err := collect(t, augment.Grow(t.Context(), stream(takes...), m, augment.GrowOptions{PerTake: 8, Keep: 3, Workers: 2}))
+	if diff := cmp.Diff(want, got); err != nil || diff != "" {
+		t.Errorf("error %v; %s", err, diff)
+	}
+}
+
+func TestGrowReportsEverySource(t *testing.T) {
+	takes := recordings(t, 6)
+	m := maker(t, augment.Default(), 1, takes...)
+	reported := map[string]augment.Tally{}
+	o := augment.GrowOptions{PerTake: 3, Workers: 2, Report: func(source string, tally augment.Tally) { reported[source] = tally }}
+	if _, err := collect(t, augment.Grow(t.Context(), stream(takes...), m, o)); err != nil {
+		t.Fatal(err)
+	}
+	for _, take := range takes {
+		tally, ok := reported[take.ID]
+		if ok == (take.Split == channels.Test) {
+			t.Errorf("%s of split %q was reported: %v", take.ID, take.Split, ok)
 		}
-		running.Wait()
-		if diff := cmp.Diff(want, got); diff != "" {
-			t.Error(diff)
+		if ok && (tally.Wanted != 3 || tally.Made != 3) {
+			t.Errorf("%s: %+v", take.ID, tally)
 		}
-	})
+	}
 }

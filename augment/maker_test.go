@@ -1,6 +1,7 @@
 package augment_test
 
 import (
+	"fmt"
 	"math"
 	"slices"
 	"testing"
@@ -9,23 +10,34 @@ import (
 	"pgregory.net/rapid"
 
 	"strandwise/augment"
+	"strandwise/augment/variation"
 	"strandwise/channels"
 )
 
-// timed and published vary enough for every part of a method to show.
-func timed() augment.Variation {
-	return augment.Variation{Method: augment.TimedPath, Knots: 7, Spread: 0.1, TimeShare: 0.5, Trim: 0.05, Coupling: 1}
+// knots and published vary enough for every part of a method to show.
+func knots() augment.Variation {
+	v := augment.Default()
+	v.Timing, v.Knots, v.Spread, v.TimeShare = augment.Knots, 7, 0.1, 0.5
+	return v
 }
 
 func published() augment.Variation {
-	return augment.Variation{Method: augment.Path, Knots: 12, Spread: 0.25, Coupling: 1}
+	v := augment.Published(augment.Path)
+	v.Knots = 12
+	return v
 }
 
-// eachMethod runs a test for both methods.
+// eachMethod runs a test for the recipe with both ways of timing, and for path
+// resampling.
 func eachMethod(t *testing.T, test func(*testing.T, augment.Variation)) {
-	for _, v := range []augment.Variation{timed(), published()} {
-		t.Run(string(v.Method), func(t *testing.T) { test(t, v) })
+	for name, v := range map[string]augment.Variation{"smooth": augment.Default(), "knots": knots(), "path": published()} {
+		t.Run(name, func(t *testing.T) { test(t, v) })
 	}
+}
+
+func coupled(v augment.Variation, rho float64) augment.Variation {
+	v.Coupling = &rho
+	return v
 }
 
 // drawTake draws a valid take of 2 to 40 frames: one to four groups of one to
@@ -77,62 +89,88 @@ func drawSeconds(t *rapid.T, n int) []float64 {
 	return out
 }
 
-// Whatever a valid take holds, a synthetic one is a valid clock with finite
-// values, from the first to the last instant of its source.
+// Whatever a valid take holds, a synthetic one has a clock that rises from the
+// same instant in the same steps and finite values, whatever the method.
 func TestDrawsAreSound(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		take := drawTake(t)
-		v := augment.Variation{
-			Method:     rapid.SampledFrom(augment.Methods()).Draw(t, "method"),
-			Knots:      rapid.IntRange(3, 40).Draw(t, "knots"),
-			Spread:     rapid.Float64Range(0, 0.33).Draw(t, "spread"),
-			TimeShare:  rapid.Float64Range(0, 1).Draw(t, "time share"),
-			Straighten: rapid.SampledFrom([]float64{0, 0.5, 1}).Draw(t, "straighten"),
-			Trim:       rapid.Float64Range(0, 0.15).Draw(t, "trim"),
-			Coupling:   rapid.Float64Range(0, 1).Draw(t, "coupling"),
-		}
-		if v.Method == augment.Path && rapid.Bool().Draw(t, "regression") {
-			v.Knots = 0
-		}
-		scales := new(channels.Scales)
-		scales.Add(take)
-		m, err := augment.NewMaker(v, scales, rapid.Uint64().Draw(t, "seed"))
+		other := take.Clone()
+		other.ID = take.ID + "'"
+		v := drawVariation(t)
+		m, err := augment.NewMaker(v, training(take, other), rapid.Uint64().Draw(t, "seed"))
 		if err != nil {
 			t.Fatalf("maker: %v", err)
 		}
 		before := take.Clone()
-		got := m.Source(take).Draw(rapid.IntRange(0, 1000).Draw(t, "draw"))
-
+		s, err := m.Source(take)
+		if err != nil {
+			t.Skip(err) // such as a mirror image of a take without sides
+		}
+		takes, tally := s.Takes(2)
+		if len(takes)+2*tally.Refused != 2 {
+			t.Fatalf("%d takes, tally %+v", len(takes), tally)
+		}
 		if !slices.Equal(take.Data, before.Data) || !slices.Equal(take.Time, before.Time) {
 			t.Fatal("the source was changed")
 		}
-		if len(got.Data) != got.Frames()*got.Width() || got.Frames() < 2 {
-			t.Fatalf("%d values for %d frames", len(got.Data), got.Frames())
-		}
-		if got.Time[0] != take.Time[0] || got.Time[got.Frames()-1] != take.Time[take.Frames()-1] {
-			t.Fatalf("clock runs from %v to %v s, the source's from %v to %v s",
-				got.Time[0], got.Time[got.Frames()-1], take.Time[0], take.Time[take.Frames()-1])
-		}
-		for i, at := range got.Time {
-			if i > 0 && at <= got.Time[i-1] {
-				t.Fatalf("time %v s at frame %d does not come after %v s", at, i, got.Time[i-1])
-			}
-			for c, x := range got.Frame(i) {
-				if math.IsNaN(x) || math.IsInf(x, 0) {
-					t.Fatalf("frame %d: channel %d is %v", i, c, x)
-				}
+		for _, got := range takes {
+			if err := sound(got, take); err != "" {
+				t.Fatalf("%s by %s: %s", got.ID, got.Made.Method, err)
 			}
 		}
 	})
 }
 
+func drawVariation(t *rapid.T) augment.Variation {
+	v := augment.Default()
+	for _, m := range rapid.SliceOfNDistinct(rapid.SampledFrom(augment.Methods()), 1, 3, rapid.ID).Draw(t, "methods") {
+		if len(v.Blend) == 1 && v.Blend[0].Method == augment.Recipe {
+			v.Blend = nil
+		}
+		v.Blend = append(v.Blend, augment.Share{Method: m, Weight: rapid.Float64Range(0.1, 4).Draw(t, "weight")})
+	}
+	v.Reach = rapid.Float64Range(0, 3).Draw(t, "reach")
+	v.Kind = rapid.SampledFrom([]augment.Kind{augment.Gesture, augment.Ongoing}).Draw(t, "kind")
+	v.Timing = rapid.SampledFrom([]augment.Timing{augment.Smooth, augment.Knots}).Draw(t, "timing")
+	v.Knots = rapid.SampledFrom([]int{0, 3, 4, 40}).Draw(t, "knots")
+	v.Spread = rapid.Float64Range(0, 0.33).Draw(t, "spread")
+	v.TimeShare = rapid.Float64Range(0, 1).Draw(t, "time share")
+	v.Mix = rapid.Float64Range(0, 1).Draw(t, "mix")
+	for _, part := range variation.Parts() {
+		if rapid.Bool().Draw(t, string(part)) {
+			v.Sizes[part] = rapid.Float64Range(0.02, 0.15).Draw(t, "size")
+		}
+	}
+	return coupled(v, rapid.Float64Range(0, 1).Draw(t, "coupling"))
+}
+
+// sound tells what is wrong with a synthetic take, empty for nothing.
+func sound(got, source *channels.Take) string {
+	if len(got.Data) != got.Frames()*got.Width() || got.Frames() < 2 {
+		return fmt.Sprintf("%d values for %d frames", len(got.Data), got.Frames())
+	}
+	if got.Time[0] != source.Time[0] {
+		return fmt.Sprintf("begins at %v s, the source at %v s", got.Time[0], source.Time[0])
+	}
+	for i, at := range got.Time {
+		if i > 0 && at <= got.Time[i-1] {
+			return fmt.Sprintf("time %v s at frame %d does not come after %v s", at, i, got.Time[i-1])
+		}
+		for c, x := range got.Frame(i) {
+			if math.IsNaN(x) || math.IsInf(x, 0) {
+				return fmt.Sprintf("frame %d: channel %d is %v", i, c, x)
+			}
+		}
+	}
+	return ""
+}
+
 func TestDrawsDependOnSeedTakeAndNumberAlone(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
-		v.Coupling = 0.5
+		v = coupled(v, 0.5)
 		take := wander(sensorLayout(t, 4), "take", 60, 1)
-		same := maker(t, v, 1, take)
-		first := same.Source(take).Draw(3)
-		again := maker(t, v, 1, take).Source(take)
+		first := source(t, v, 1, take).Draw(3)
+		again := source(t, v, 1, take)
 		again.Draw(0) // draws made before do not matter
 		if diff := cmp.Diff(first, again.Draw(3)); diff != "" {
 			t.Errorf("the same draw differs: %s", diff)
@@ -140,9 +178,9 @@ func TestDrawsDependOnSeedTakeAndNumberAlone(t *testing.T) {
 		renamed := take.Clone()
 		renamed.ID = "other"
 		for name, other := range map[string]*channels.Take{
-			"other seed":   maker(t, v, 2, take).Source(take).Draw(3),
-			"other take":   same.Source(renamed).Draw(3),
-			"other number": same.Source(take).Draw(4),
+			"other seed":   source(t, v, 2, take).Draw(3),
+			"other take":   source(t, v, 1, renamed).Draw(3),
+			"other number": source(t, v, 1, take).Draw(4),
 		} {
 			if slices.Equal(first.Data, other.Data) {
 				t.Errorf("%s: the same samples", name)
@@ -151,17 +189,29 @@ func TestDrawsDependOnSeedTakeAndNumberAlone(t *testing.T) {
 	})
 }
 
-func TestMakeIsTheFirstDraws(t *testing.T) {
+// Without gates the takes made are the first draws, in the order of choice.
+func TestTakesAreTheFirstDrawsInOrder(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
 		take := wander(sensorLayout(t, 2), "take", 50, 1)
-		m := maker(t, v, 1, take)
-		made, err := m.Make(take, 3)
-		if err != nil || len(made) != 3 {
+		made, err := maker(t, v, 1, take).Make(take, 6)
+		if err != nil || len(made) != 6 {
 			t.Fatalf("%d takes, %v", len(made), err)
 		}
-		for k, got := range made {
-			if diff := cmp.Diff(m.Source(take).Draw(k), got); diff != "" {
-				t.Errorf("take %d is not draw %d: %s", k, k, diff)
+		seen := map[int]bool{}
+		for rank, got := range made {
+			if got.Made.Rank != rank {
+				t.Errorf("take %d has rank %d", rank, got.Made.Rank)
+			}
+			seen[got.Made.Draw] = true
+			want := source(t, v, 1, take).Draw(got.Made.Draw)
+			want.Made.Rank = rank
+			if diff := cmp.Diff(want, got); diff != "" {
+				t.Errorf("take %d is not draw %d: %s", rank, got.Made.Draw, diff)
+			}
+		}
+		for draw := range 6 {
+			if !seen[draw] {
+				t.Errorf("draw %d is not among the takes", draw)
 			}
 		}
 	})
@@ -173,7 +223,7 @@ func TestDrawsTellWhereTheyComeFrom(t *testing.T) {
 		take.Split, take.Where = channels.Train, "wave.csv:2"
 		seen := map[string]bool{take.ID: true}
 		for k := range 5 {
-			got := maker(t, v, 1, take).Source(take).Draw(k)
+			got := source(t, v, 1, take).Draw(k)
 			if got.Label != take.Label || got.Subject != take.Subject || got.Session != take.Session || got.Split != take.Split {
 				t.Errorf("label %q, subject %q, session %q, split %q differ from the source's", got.Label, got.Subject, got.Session, got.Split)
 			}
@@ -184,12 +234,11 @@ func TestDrawsTellWhereTheyComeFrom(t *testing.T) {
 				t.Errorf("id %q is taken", got.ID)
 			}
 			seen[got.ID] = true
-			if got.Made.Source != take.ID || got.Made.Draw != k || got.Made.Method != string(v.Method) {
+			if got.Made.Source != take.ID || got.Made.Draw != k || got.Made.Method != string(v.Blend[0].Method) {
 				t.Errorf("draw %d was made so: %+v", k, got.Made)
 			}
-			p := got.Made.Parameters
-			if p["knots"] != float64(v.Knots) || p["spread"] != v.Spread || p["coupling"] != v.Coupling {
-				t.Errorf("parameters %v do not tell %+v", p, v)
+			if len(got.Made.Parameters) == 0 {
+				t.Error("no parameter tells what was drawn")
 			}
 		}
 	})
@@ -213,13 +262,23 @@ func twoLimbs(t testing.TB) *channels.Take {
 	return take
 }
 
+// noSizes takes away all that is drawn for each group, so that groups with one
+// signal differ by their timing alone.
+func noSizes(v augment.Variation) augment.Variation {
+	for _, part := range variation.Parts() {
+		if part != variation.Timing && part != variation.TimingLength {
+			v.Sizes[part] = 0
+		}
+	}
+	return v
+}
+
 func TestCouplingOfLimbs(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
-		v.Trim = 0
+		v = noSizes(v)
 		take := twoLimbs(t)
-		for _, coupling := range []float64{0, 0.5, 1} {
-			v.Coupling = coupling
-			source := maker(t, v, 1, take).Source(take)
+		for _, rho := range []float64{0, 0.5, 1} {
+			source := source(t, coupled(v, rho), 1, take)
 			var before []float64
 			for k := range 20 {
 				got := source.Draw(k)
@@ -228,15 +287,15 @@ func TestCouplingOfLimbs(t *testing.T) {
 					f := got.Frame(i)
 					apart = max(apart, math.Abs(f[0]-f[2]))
 					if !slices.Equal(f[:2], f[4:]) {
-						t.Fatalf("coupling %v, draw %d: groups of one limb part at frame %d", coupling, k, i)
+						t.Fatalf("coupling %v, draw %d: groups of one limb part at frame %d", rho, k, i)
 					}
 				}
 				if slices.Equal(got.Data, before) {
-					t.Errorf("coupling %v: draws %d and %d are the same", coupling, k-1, k)
+					t.Errorf("coupling %v: draws %d and %d are the same", rho, k-1, k)
 				}
 				before = got.Data
-				if (apart == 0) != (coupling == 1) {
-					t.Errorf("coupling %v, draw %d: the limbs part by up to %v", coupling, k, apart)
+				if (apart == 0) != (rho == 1) {
+					t.Errorf("coupling %v, draw %d: the limbs part by up to %v", rho, k, apart)
 				}
 			}
 		}
@@ -246,11 +305,11 @@ func TestCouplingOfLimbs(t *testing.T) {
 // A tighter coupling keeps two limbs with one signal closer together.
 func TestCouplingIsGradual(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
+		v = noSizes(v)
 		take := twoLimbs(t)
 		before := math.Inf(1)
-		for _, coupling := range []float64{0, 0.6, 0.95} {
-			v.Coupling = coupling
-			source := maker(t, v, 1, take).Source(take)
+		for _, rho := range []float64{0, 0.6, 0.95} {
+			source := source(t, coupled(v, rho), 1, take)
 			apart := 0.0
 			for k := range 100 {
 				got := source.Draw(k)
@@ -260,21 +319,33 @@ func TestCouplingIsGradual(t *testing.T) {
 				}
 			}
 			if apart > 0.8*before {
-				t.Errorf("coupling %v parts the limbs by %v, a looser one by %v", coupling, apart, before)
+				t.Errorf("coupling %v parts the limbs by %v, a looser one by %v", rho, apart, before)
 			}
 			before = apart
 		}
 	})
 }
 
+// positions is a layout of two tracked points, whose units no law of motion
+// ties to each other.
+func positions(t testing.TB) *channels.Layout {
+	l := new(channels.Layout)
+	for _, name := range []string{"a.pos.x", "a.pos.y", "a.pos.z", "b.pos.x", "b.pos.y", "b.pos.z"} {
+		c, _ := channels.ParseHeader(name)
+		l.Channels = append(l.Channels, c)
+	}
+	return grouped(t, l, channels.Group{Name: "a", Channels: []int{0, 1, 2}}, channels.Group{Name: "b", Channels: []int{3, 4, 5}})
+}
+
 // Groups are weighed by their size: a channel in another unit gives the same
 // draw in that unit.
 func TestDrawsFollowTheUnit(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
-		if v.Method == augment.Path {
+		if v.Blend[0].Method == augment.Path {
 			v.Knots = 0 // the regression too sees groups in units of their size
 		}
-		l := sensorLayout(t, 2)
+		l := positions(t)
+		v.PathShare = 0
 		take := wander(l, "take", 400, 1)
 		inUnits := take.Clone()
 		for i := range inUnits.Frames() {
@@ -282,7 +353,7 @@ func TestDrawsFollowTheUnit(t *testing.T) {
 				inUnits.Frame(i)[c] *= 1024
 			}
 		}
-		got, want := maker(t, v, 1, inUnits).Source(inUnits).Draw(0), maker(t, v, 1, take).Source(take).Draw(0)
+		got, want := source(t, v, 1, inUnits).Draw(0), source(t, v, 1, take).Draw(0)
 		for i := range want.Frames() {
 			for c, x := range want.Frame(i) {
 				if slices.Contains(l.Groups[1].Channels, c) {

@@ -11,7 +11,7 @@ import (
 // at any time. An error among the items, or the end of ctx, is yielded once,
 // after the results of the items before it, and ends the sequence. When the
 // receiver stops early the item sequence is ended too, before ordered returns.
-func ordered[T, R any](ctx context.Context, items iter.Seq2[T, error], workers int, f func(T) R) iter.Seq2[R, error] {
+func ordered[T, R any](ctx context.Context, items func(yield func(T, error) bool), workers int, f func(T) R) iter.Seq2[R, error] {
 	type task struct {
 		item   T
 		err    error

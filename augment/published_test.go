@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"strandwise/augment/path"
+	"strandwise/augment/variation"
 )
 
 // The definition, seen in a finished take: with 12 points over 56 frames every
@@ -13,7 +14,7 @@ import (
 // point, and these lengths sum to the length of the group's path.
 func TestPathMatchesItsDefinition(t *testing.T) {
 	take := wander(sensorLayout(t, 1), "take", 56, 1)
-	source := maker(t, published(), 1, take).Source(take)
+	source := source(t, published(), 1, take)
 	want := path.NewArc(take.Data, take.Width()).Length() / 11
 	for k := range 20 {
 		got := source.Draw(k)
@@ -32,10 +33,10 @@ func TestPathMatchesItsDefinition(t *testing.T) {
 func TestPathKnowsNoTiming(t *testing.T) {
 	take := wander(sensorLayout(t, 2), "take", 50, 1)
 	v := published()
-	want := maker(t, v, 1, take).Source(take).Draw(0)
-	v.TimeShare, v.Straighten, v.Trim = 0.7, 0.5, 0.1
-	if got := maker(t, v, 1, take).Source(take).Draw(0); !slices.Equal(got.Data, want.Data) {
-		t.Error("time share, straighten or trim changed the draw")
+	want := source(t, v, 1, take).Draw(0)
+	v.TimeShare, v.Mix, v.Sizes[variation.Trim] = 0.7, 0.5, 0.1
+	if got := source(t, v, 1, take).Draw(0); !slices.Equal(got.Data, want.Data) {
+		t.Error("time share, mix or trim changed the draw")
 	}
 }
 
@@ -46,7 +47,7 @@ func TestPathKnotsByRegression(t *testing.T) {
 	v.Knots = 0
 	knots := func(frames int) float64 {
 		take := wander(sensorLayout(t, 1), "take", frames, 1)
-		return maker(t, v, 1, take).Source(take).Draw(0).Made.Parameters["knots"]
+		return source(t, v, 1, take).Draw(0).Made.Parameters["knots"]
 	}
 	take := wander(sensorLayout(t, 1), "take", 200, 1)
 	if got, want := knots(200), math.Round(path.NewArc(take.Data, take.Width()).Knots()); got != want || want > 200 {

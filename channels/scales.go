@@ -1,6 +1,9 @@
 package channels
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Scales measures how large each channel group's movement is over many takes:
 // the root mean square of its values with each take's mean removed, pooled.
@@ -40,18 +43,27 @@ func (s *Scales) RMS(g int) float64 {
 // Apply returns the take's values, frames × channels, with each group divided
 // by its size, so that groups of different units weigh alike.
 func (s *Scales) Apply(t *Take) []float64 {
-	w := t.Width()
-	inverse := make([]float64, w)
+	out := slices.Clone(t.Data)
 	for g, group := range t.Layout.Groups {
-		for _, c := range group.Channels {
-			inverse[c] = 1 / s.RMS(g)
-		}
-	}
-	out := make([]float64, len(t.Data))
-	for i, v := range t.Data {
-		out[i] = v * inverse[i%w]
+		multiply(out, t.Width(), group.Channels, 1/s.RMS(g))
 	}
 	return out
+}
+
+// Undo multiplies values, frames × channels, by the sizes of their groups in
+// place.
+func (s *Scales) Undo(values []float64, l *Layout) {
+	for g, group := range l.Groups {
+		multiply(values, len(l.Channels), group.Channels, s.RMS(g))
+	}
+}
+
+func multiply(values []float64, w int, list []int, factor float64) {
+	for i := 0; i < len(values); i += w {
+		for _, c := range list {
+			values[i+c] *= factor
+		}
+	}
 }
 
 // centredSquares returns the sum of squares of one channel about its mean. It

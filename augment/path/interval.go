@@ -27,25 +27,16 @@ func Gaussians(dst []float64, rng *rand.Rand) []float64 {
 	return dst
 }
 
-// CoupledIntervals fills dst with interval draws of variance v that follow
-// the shared normal draws with correlation ρ, by a Gaussian copula: with z the
-// shared and e the own draws,
-//
-//	dst[i] = 1 + √(3v)·(2Φ(√ρ·z[i] + √(1−ρ)·e[i]) − 1)
-//
-// Each dst[i] alone is distributed as in [Intervals]. Two groups drawn with
-// the same z correlate by ρ in the normal scale; with ρ = 1 they are equal.
-// dst may be shared or own itself.
-func CoupledIntervals(dst []float64, v, rho float64, shared, own []float64) []float64 {
-	if len(shared) != len(dst) || len(own) != len(dst) {
-		panic("path: shared and own draws differ in number from the intervals")
+// CopulaIntervals turns standard normal draws into interval draws of variance v
+// in place and returns them: 1 + √(3v)·(2Φ(z) − 1), distributed as in
+// [Intervals]. Draws that correlate in the normal scale give intervals tied by
+// a Gaussian copula.
+func CopulaIntervals(z []float64, v float64) []float64 {
+	half := math.Sqrt(3 * v)
+	for i, x := range z {
+		z[i] = 1 + half*(math.Erfc(-x/math.Sqrt2)-1)
 	}
-	half, a, b := math.Sqrt(3*v), math.Sqrt(rho), math.Sqrt(1-rho)
-	for i := range dst {
-		z := a*shared[i] + b*own[i]
-		dst[i] = 1 + half*(math.Erfc(-z/math.Sqrt2)-1)
-	}
-	return dst
+	return z
 }
 
 // Fractions writes into dst the cumulated fractions of the intervals: dst[0]

@@ -73,17 +73,20 @@ func TestGaussiansMoments(t *testing.T) {
 	}
 }
 
-// Two groups with the same shared draws correlate by ρ on the normal scale,
-// and by 6/π·asin(ρ/2) on the scale of the uniform intervals (Pearson, 1907:
-// rank correlation of the bivariate normal distribution).
-func TestCoupledIntervalsCorrelation(t *testing.T) {
+// Normal draws that correlate by ρ give intervals that correlate by ρ on the
+// normal scale, and by 6/π·asin(ρ/2) on their own (Pearson, 1907: rank
+// correlation of the bivariate normal distribution).
+func TestCopulaIntervalsCorrelation(t *testing.T) {
 	const v = 0.25
 	rng := rand.New(rand.NewPCG(2, 1))
-	gaussians := func() []float64 { return path.Gaussians(make([]float64, manyDraws), rng) }
 	for _, rho := range []float64{0, 0.3, 0.6, 1} {
-		shared := gaussians()
-		left := path.CoupledIntervals(make([]float64, manyDraws), v, rho, shared, gaussians())
-		right := path.CoupledIntervals(make([]float64, manyDraws), v, rho, shared, gaussians())
+		left := path.Gaussians(make([]float64, manyDraws), rng)
+		right := path.Gaussians(make([]float64, manyDraws), rng)
+		for i := range right {
+			right[i] = rho*left[i] + math.Sqrt(1-rho*rho)*right[i]
+		}
+		path.CopulaIntervals(left, v)
+		path.CopulaIntervals(right, v)
 		checkIntervals(t, left, v)
 		checkIntervals(t, right, v)
 		limit := 5 / math.Sqrt(manyDraws)
@@ -92,9 +95,6 @@ func TestCoupledIntervalsCorrelation(t *testing.T) {
 		}
 		if r, want := correlation(left, right), 6/math.Pi*math.Asin(rho/2); math.Abs(r-want) > limit {
 			t.Errorf("ρ = %v: correlation of intervals %v, want %v", rho, r, want)
-		}
-		if rho == 1 && !slices.Equal(left, right) {
-			t.Error("ρ = 1: the groups' intervals differ")
 		}
 	}
 }
@@ -120,18 +120,11 @@ func correlation(x, y []float64) float64 {
 }
 
 // However far out the normal draws lie, an interval stays positive, so that no
-// path runs backwards. dst may be the own draws.
-func TestCoupledIntervalsStayPositive(t *testing.T) {
+// path runs backwards.
+func TestCopulaIntervalsStayPositive(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		v := rapid.Float64Range(0, math.Nextafter(path.MaxSpread, 0)).Draw(t, "v")
-		rho := rapid.Float64Range(0, 1).Draw(t, "rho")
-		n := rapid.IntRange(1, 20).Draw(t, "n")
-		normal := rapid.SliceOfN(rapid.Float64Range(-50, 50), n, n)
-		shared, own := normal.Draw(t, "shared"), normal.Draw(t, "own")
-		apart := path.CoupledIntervals(make([]float64, n), v, rho, shared, own)
-		inPlace := path.CoupledIntervals(own, v, rho, shared, own)
-		near(t, "in place", inPlace, apart, 0)
-		for _, x := range apart {
+		for _, x := range path.CopulaIntervals(rapid.SliceOf(rapid.Float64Range(-50, 50)).Draw(t, "normal"), v) {
 			if !(x > 0 && x <= 2) {
 				t.Fatalf("interval %v", x)
 			}
@@ -157,7 +150,5 @@ func TestFractionsRiseFromZeroToOne(t *testing.T) {
 
 func TestIntervalMisuse(t *testing.T) {
 	three := make([]float64, 3)
-	panics(t, "too few shared draws", func() { path.CoupledIntervals(three, 0.1, 0, three[:2], three) })
-	panics(t, "too few own draws", func() { path.CoupledIntervals(three, 0.1, 0, three, three[:2]) })
 	panics(t, "no room for the end", func() { path.Fractions(three, three) })
 }

@@ -7,12 +7,22 @@ import (
 	"testing"
 
 	"strandwise/augment"
+	"strandwise/augment/variation"
 	"strandwise/channels"
 )
 
-// unvaried is the timed method with nothing to vary.
+// unvaried is the recipe with nothing to vary: what is drawn has no size.
 func unvaried() augment.Variation {
-	return augment.Variation{Method: augment.TimedPath, Knots: 8, TimeShare: 0.5, Coupling: 1}
+	v := noSizes(augment.Default())
+	v.Sizes[variation.Timing], v.Mix, v.PathShare = 0, 0, 0
+	return coupled(v, 1)
+}
+
+// bent is unvaried but for its timing.
+func bent() augment.Variation {
+	v := unvaried()
+	v.Sizes[variation.Timing] = 0.3
+	return v
 }
 
 // withRest holds the take still over its middle third.
@@ -24,13 +34,13 @@ func withRest(take *channels.Take) *channels.Take {
 	return take
 }
 
-func TestTimedPathWithoutVariationIsItsSource(t *testing.T) {
-	l := sensorLayout(t, 3)
+func TestRecipeWithoutVariationIsItsSource(t *testing.T) {
+	l := positions(t)
 	for _, take := range []*channels.Take{wander(l, "moving", 80, 1), withRest(wander(l, "resting", 80, 2)), wander(l, "two frames", 2, 3)} {
 		for _, share := range []float64{0, 0.3, 1} {
 			v := unvaried()
 			v.TimeShare = share
-			got := maker(t, v, 1, take).Source(take).Draw(5)
+			got := source(t, v, 1, take).Draw(5)
 			if !slices.Equal(got.Time, take.Time) {
 				t.Errorf("%s, time share %v: the clock differs", take.ID, share)
 			}
@@ -68,7 +78,7 @@ func TestUnevenClockBecomesEven(t *testing.T) {
 		{"three frames", []float64{0, 1, 4}, 3}, // no step counts as less than one
 	} {
 		take := line(t, c.seconds...)
-		got := maker(t, unvaried(), 1, take).Source(take).Draw(0)
+		got := source(t, unvaried(), 1, take).Draw(0)
 		if got.Frames() != c.frames {
 			t.Errorf("%s: %d frames, want %d", c.name, got.Frames(), c.frames)
 		}
@@ -90,7 +100,7 @@ func TestUnevenClockBecomesEven(t *testing.T) {
 // A clock of bursts and long gaps must not ask for frames without end.
 func TestGapsDoNotMultiplyFrames(t *testing.T) {
 	take := line(t, 0, 1e-6, 2e-6, 3e-6, 3600)
-	got := maker(t, unvaried(), 1, take).Source(take).Draw(0)
+	got := source(t, unvaried(), 1, take).Draw(0)
 	if got.Frames() > 100 {
 		t.Errorf("%d frames from %d", got.Frames(), take.Frames())
 	}
@@ -109,14 +119,14 @@ func evenSeconds(frames int, rate float64) []float64 {
 func TestTrimsShiftStartAndEnd(t *testing.T) {
 	take := line(t, evenSeconds(101, 50)...)
 	v := unvaried()
-	v.Trim = 0.05
-	source := maker(t, v, 1, take).Source(take)
+	v.Sizes[variation.Trim] = 0.05
+	source := source(t, v, 1, take)
 	const draws = 2000
 	squares, inwards, outwards := 0.0, 0, 0
 	for k := range draws {
 		got := source.Draw(k)
-		start, end := got.Made.Parameters["trim_start_s"], got.Made.Parameters["trim_end_s"]
-		if limit := 2.5 * v.Trim * take.Duration(); math.Abs(start) > limit || math.Abs(end) > limit {
+		start, end := got.Made.Parameters["start_s"], -got.Made.Parameters["end_s"]
+		if limit := 2.5 * 0.05 * take.Duration(); math.Abs(start) > limit || math.Abs(end) > limit {
 			t.Fatalf("draw %d trims %v s and %v s, beyond %v s", k, start, end, limit)
 		}
 		if x := got.Data[0]; math.Abs(x-max(start, 0)) > 1e-9 {
@@ -133,8 +143,8 @@ func TestTrimsShiftStartAndEnd(t *testing.T) {
 		}
 	}
 	// Cut at 2.5 standard deviations, a normal draw keeps 0.978 of its own.
-	if sd := math.Sqrt(squares) / take.Duration(); math.Abs(sd-0.978*v.Trim) > 0.05*v.Trim {
-		t.Errorf("trims have a standard deviation of %v of the duration, want about %v", sd, 0.978*v.Trim)
+	if sd := math.Sqrt(squares) / take.Duration(); math.Abs(sd-0.978*0.05) > 0.05*0.05 {
+		t.Errorf("trims have a standard deviation of %v of the duration, want about %v", sd, 0.978*0.05)
 	}
 	if min(inwards, outwards) < draws/3 {
 		t.Errorf("%d starts move inwards, %d outwards", inwards, outwards)
@@ -146,8 +156,8 @@ func TestTrimsShiftStartAndEnd(t *testing.T) {
 func TestTimingNeverRunsBack(t *testing.T) {
 	take := line(t, evenSeconds(101, 50)...)
 	v := unvaried()
-	v.Spread = 0.3
-	source := maker(t, v, 1, take).Source(take)
+	v.Sizes[variation.Timing] = 0.8
+	source := source(t, v, 1, take)
 	for k := range 200 {
 		got := source.Draw(k)
 		moved := 0.0
@@ -168,8 +178,8 @@ func TestSpreadAndKnotsControlTiming(t *testing.T) {
 	take := line(t, evenSeconds(101, 50)...)
 	moved := func(knots int, spread float64) float64 {
 		v := unvaried()
-		v.Knots, v.Spread = knots, spread
-		source, sum := maker(t, v, 1, take).Source(take), 0.0
+		v.Timing, v.Knots, v.Spread = augment.Knots, knots, spread
+		source, sum := source(t, v, 1, take), 0.0
 		for k := range 300 {
 			got := source.Draw(k)
 			for i, x := range got.Data {
@@ -188,10 +198,10 @@ func TestSpreadAndKnotsControlTiming(t *testing.T) {
 
 // A cubic reading swings beyond its frames by at most a quarter of their range
 // (its negative weights sum to u(1−u) ≤ ¼).
-func TestTimedPathStaysNearSourceRange(t *testing.T) {
+func TestTimingStaysNearSourceRange(t *testing.T) {
 	for seed := range uint64(20) {
-		take := wander(sensorLayout(t, 2), fmt.Sprint(seed), 40, seed)
-		source := maker(t, timed(), seed, take).Source(take)
+		take := wander(positions(t), fmt.Sprint(seed), 40, seed)
+		source := source(t, bent(), seed, take)
 		low, high := slices.Clone(take.Frame(0)), slices.Clone(take.Frame(0))
 		for i := range take.Frames() {
 			for c, x := range take.Frame(i) {
@@ -212,16 +222,15 @@ func TestTimedPathStaysNearSourceRange(t *testing.T) {
 }
 
 // With full straightening the group moves by the same length between any two
-// knots. With time as the parameter the knots fall on every tenth frame here.
+// of the 16 knots, which fall on every fifth frame here.
 func TestStraightenEvensDisplacements(t *testing.T) {
-	take := wander(sensorLayout(t, 1), "take", 71, 1)
-	v := unvaried()
-	v.Spread, v.TimeShare, v.Straighten = 0.1, 1, 1
-	plain := v
-	plain.Straighten = 0
-	source, unstraightened := maker(t, v, 1, take).Source(take), maker(t, plain, 1, take).Source(take)
+	take := wander(positions(t), "take", 76, 1)
+	plain := bent()
+	v := bent()
+	v.Sizes[variation.Straighten] = 1
+	source, unstraightened := source(t, v, 1, take), source(t, plain, 1, take)
 	for k := range 20 {
-		got, before := steps(source.Draw(k), 10), steps(unstraightened.Draw(k), 10)
+		got, before := steps(source.Draw(k), 5), steps(unstraightened.Draw(k), 5)
 		mean := 0.0
 		for _, d := range before {
 			mean += d / float64(len(before))
@@ -255,17 +264,16 @@ func steps(take *channels.Take, every int) []float64 {
 // A rest keeps most of its duration when the parameter follows time at least in
 // part. The source rests for 30 frames.
 func TestRestKeepsADuration(t *testing.T) {
-	take := withRest(wander(sensorLayout(t, 1), "take", 90, 1))
-	v := unvaried()
-	v.Spread = 0.1
+	take := withRest(wander(positions(t), "take", 90, 1))
+	v := bent()
 	for _, share := range []float64{0.5, 1} {
 		v.TimeShare = share
-		source, still := maker(t, v, 1, take).Source(take), 0
+		source, still := source(t, v, 1, take), 0
 		const draws = 200
 		for k := range draws {
 			still += framesAt(source.Draw(k), take.Frame(45))
 		}
-		if mean := float64(still) / draws; mean < 20 || mean > 36 {
+		if mean := float64(still) / draws; mean < 18 || mean > 36 {
 			t.Errorf("time share %v: draws rest for %v frames on average", share, mean)
 		}
 	}
