@@ -2,8 +2,8 @@ package job
 
 import (
 	"context"
-	"errors"
 	"io"
+	"strings"
 
 	"strandwise/augment"
 	"strandwise/channels"
@@ -66,56 +66,35 @@ func score(ctx context.Context, s *survey, methods []classify.Method, o classify
 	})
 }
 
-// variation is the method's default with the keys that were given.
-func (p *Plan) variation() (augment.Variation, error) {
-	method, err := augment.ParseMethod(p.Method)
-	if err != nil {
-		return augment.Variation{}, p.fault("method", "%v", err)
-	}
-	v := augment.Default(method)
-	for key, set := range map[string]func(){
-		"knots":      func() { v.Knots = p.Knots },
-		"spread":     func() { v.Spread = p.Spread },
-		"time_share": func() { v.TimeShare = p.TimeShare },
-		"straighten": func() { v.Straighten = p.Straighten },
-		"trim":       func() { v.Trim = p.Trim },
-		"coupling":   func() { v.Coupling = p.Coupling },
-	} {
-		if p.given[key] {
-			set()
-		}
-	}
-	var outside *augment.RangeError
-	if errors.As(v.Validate(), &outside) {
-		return v, p.fault(outside.Field, "%s", outside.Problem)
-	}
-	return v, nil
-}
-
-// methods returns the plan's method of making takes, and when they are to be
-// compared, all others at their defaults.
+// methods returns the plan's way of making takes, and when they are to be
+// compared, all other methods at their published settings.
 func (p *Plan) methods() ([]classify.Method, error) {
 	v, err := p.variation()
 	if err != nil {
 		return nil, err
 	}
-	out := []classify.Method{p.method(v)}
+	out := []classify.Method{p.method(strings.Join(p.Method, "+"), v)}
 	for _, m := range augment.Methods() {
-		if p.Compare && m != v.Method {
-			out = append(out, p.method(augment.Default(m)))
+		if p.Compare && !(len(v.Blend) == 1 && v.Blend[0].Method == m) {
+			out = append(out, p.method(string(m), augment.Published(m)))
 		}
 	}
 	return out, nil
 }
 
-// method is a variation under the name of its method. It fits a maker to a set
-// of training takes.
-func (p *Plan) method(v augment.Variation) classify.Method {
-	return classify.Method{Name: string(v.Method), Fit: func(training []*channels.Take) (classify.Maker, error) {
-		scales := new(channels.Scales)
-		for _, t := range training {
-			scales.Add(t)
-		}
-		return augment.NewMaker(v, scales, p.Seed)
+// method is a variation under a name. It fits a maker to a set of training
+// takes.
+func (p *Plan) method(name string, v augment.Variation) classify.Method {
+	return classify.Method{Name: name, Fit: func(training []*channels.Take) (classify.Maker, error) {
+		return augment.NewMaker(v, learn(training), p.Seed)
 	}}
+}
+
+// learn returns what a maker is to know of these training takes, all of them.
+func learn(takes []*channels.Take) augment.Training {
+	t := augment.Training{Scales: new(channels.Scales), Takes: takes}
+	for _, take := range takes {
+		t.Scales.Add(take)
+	}
+	return t
 }

@@ -13,7 +13,7 @@ import (
 // scoring reads the keys that say how to score.
 func (p *Plan) scoring() (classify.Options, error) {
 	o := classify.Options{
-		Band: p.Band, PerTake: p.PerTake, Method: p.Method, Curve: p.Curve, Reject: p.Reject,
+		Band: p.Band, PerTake: p.PerTake, Curve: p.Curve, Reject: p.Reject,
 		TakesPerLabel: p.TakesPerLabel, TestShare: p.TestShare, Seed: p.Seed, Workers: p.Workers,
 	}
 	if p.given["repeats"] {

@@ -4,6 +4,7 @@ import (
 	"context"
 	"slices"
 
+	"strandwise/augment"
 	"strandwise/channels"
 	"strandwise/classify"
 )
@@ -11,13 +12,14 @@ import (
 // survey is what the first pass over the recordings finds. It holds no more
 // than a bounded sample of them.
 type survey struct {
-	layout   *channels.Layout
-	takes    int
-	training int
-	frames   int
-	scales   channels.Scales  // of the training takes
-	sample   *classify.Sample // to score on
-	rest     *classify.Sample // of takes that are no gesture
+	layout      *channels.Layout
+	takes       int
+	trains      int // takes that train
+	trainFrames int // in them
+	frames      int
+	scales      channels.Scales  // of the training takes
+	sample      *classify.Sample // to score on
+	rest        *classify.Sample // of takes that are no gesture
 }
 
 // look reads all recordings once, which also shows whether they are sound
@@ -36,7 +38,8 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noG
 		s.takes++
 		s.frames += t.Frames()
 		if t.Split != channels.Test {
-			s.training++
+			s.trains++
+			s.trainFrames += t.Frames()
 			s.scales.Add(t)
 		}
 		if slices.Contains(noGesture, t.Label) {
@@ -49,4 +52,15 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noG
 		return nil, &UsageError{Problem: "the recordings hold no takes"}
 	}
 	return s, nil
+}
+
+// training returns what a maker is to know of the takes that train.
+func (s *survey) training() augment.Training {
+	t := augment.Training{Scales: &s.scales}
+	for _, take := range append(s.sample.Takes(), s.rest.Takes()...) {
+		if take.Split != channels.Test {
+			t.Takes = append(t.Takes, take)
+		}
+	}
+	return t
 }
