@@ -1,5 +1,3 @@
-// Package group says which channels of a layout move as one body part or
-// sensor.
 package group
 
 import (
