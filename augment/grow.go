@@ -2,6 +2,7 @@ package augment
 
 import (
 	"context"
+	"slices"
 
 	"strandwise/channels"
 )
@@ -51,7 +52,7 @@ type batch struct {
 }
 
 func (m *Maker) batch(t *channels.Take, o GrowOptions) batch {
-	if t.Split == channels.Test || o.PerTake == 0 {
+	if t.Split == channels.Test || o.PerTake == 0 || m.spares(t.Label) {
 		return batch{takes: []*channels.Take{t}}
 	}
 	s, err := m.Source(t)
@@ -64,3 +65,6 @@ func (m *Maker) batch(t *channels.Take, o GrowOptions) batch {
 	}
 	return batch{takes: append([]*channels.Take{t}, made...), tally: tally}
 }
+
+// spares tells whether takes of a label are left as recorded.
+func (m *Maker) spares(label string) bool { return slices.Contains(m.variation.Spare, label) }

@@ -54,6 +54,9 @@ func (m *Maker) plainSize(part variation.Part, label, of string) float64 {
 // Make makes at most n takes of a source take, the best choice first; fewer
 // where too many draws fail a gate.
 func (m *Maker) Make(t *channels.Take, n int) ([]*channels.Take, error) {
+	if m.spares(t.Label) {
+		return nil, nil
+	}
 	s, err := m.Source(t)
 	if err != nil {
 		return nil, err

@@ -266,7 +266,7 @@ func twoLimbs(t testing.TB) *channels.Take {
 // signal differ by their timing alone.
 func noSizes(v augment.Variation) augment.Variation {
 	for _, part := range variation.Parts() {
-		if part != variation.Timing && part != variation.TimingLength {
+		if part != variation.Timing && part != variation.TimingLength && part != variation.ShapeLength {
 			v.Sizes[part] = 0
 		}
 	}

@@ -29,9 +29,10 @@ type recipeSource struct {
 	parts    []chart.Part // of the plot
 	planar   bool         // no part has more than two axes
 	partners []*partner
-	extents  []extent        // of each part
-	rotation float64         // deviation of the angle, rad
-	sizes    *smooth.Process // of what changes smoothly during the take, at its frames
+	extents  []extent                    // of each part
+	rotation float64                     // deviation of the angle, rad
+	sizes    *smooth.Process             // of factors that change smoothly during the take, at its frames
+	drifts   map[float64]*smooth.Process // of what is added, by correlation length
 	timing   *timing
 	texture  *texture // of ongoing motion, else nil
 	noise    noise
@@ -41,13 +42,13 @@ type recipeSource struct {
 // is constant, one that changes smoothly, and one of each coordinate; and what
 // is added to a coordinate, constant or smooth, in sizes of the part. straighten
 // is the strength of displacement normalisation.
-type extent struct{ amplitude, gain, single, offset, shape, straighten float64 }
+type extent struct{ amplitude, gain, single, offset, shape, shapeLength, straighten float64 }
 
 func (m *Maker) extent(label, group string) extent {
 	size := func(p variation.Part) float64 { return m.size(p, label, group) }
 	return extent{
 		size(variation.Amplitude), size(variation.Gain), size(variation.ChannelGain),
-		size(variation.Offset), size(variation.Shape), min(size(variation.Straighten), 1),
+		size(variation.Offset), size(variation.Shape), m.plainSize(variation.ShapeLength, label, group), min(size(variation.Straighten), 1),
 	}
 }
 
@@ -56,15 +57,21 @@ func (m *Maker) extent(label, group string) extent {
 const sizeLength = 0.2
 
 func newRecipeSource(m *Maker, t *channels.Take) (*recipeSource, error) {
-	c, err := chart.New(t.Layout, t.Skeleton, chart.Options{FreeFeet: m.variation.FreeFeet})
+	o := m.training.Chart
+	o.FreeFeet = m.variation.FreeFeet
+	c, err := chart.New(t.Layout, t.Skeleton, o)
 	if err != nil {
 		return nil, err
 	}
 	s := &recipeSource{maker: m, take: t, chart: c, plot: c.Plot(t)}
 	s.parts = s.plot.Parts()
 	s.planar = planar(s.parts)
-	for _, part := range s.parts {
+	s.drifts = make(map[float64]*smooth.Process)
+	for k, part := range s.parts {
 		s.extents = append(s.extents, m.extent(t.Label, t.Layout.Groups[part.Group].Name))
+		if length := s.extents[k].shapeLength; s.drifts[length] == nil {
+			s.drifts[length] = smooth.NewProcess(fractions(t.Time), length)
+		}
 	}
 	s.rotation = m.size(variation.Orientation, t.Label, "")
 	s.sizes = smooth.NewProcess(fractions(t.Time), sizeLength)
@@ -174,7 +181,7 @@ func (s *recipeSource) drawGain(part chart.Part, v extent, draw int) gain {
 	constant, common := v.amplitude*rng.NormFloat64(), centred(s.sizes.Draw(make([]float64, n), rng))
 	var g gain
 	for range part.Coordinates {
-		factor, added := s.sizes.Draw(make([]float64, n), rng), centred(s.sizes.Draw(make([]float64, n), rng))
+		factor, added := s.sizes.Draw(make([]float64, n), rng), centred(s.drifts[v.shapeLength].Draw(make([]float64, n), rng))
 		moved := v.offset * rng.NormFloat64()
 		for i := range factor {
 			factor[i] = math.Exp(constant+v.gain*common[i]) * (1 + v.single*factor[i])

@@ -26,9 +26,8 @@ func (t *Tally) Merge(o Tally) {
 	t.Gates.Merge(o.Gates)
 }
 
-// Takes makes n takes that pass the gates, the best choice first: of every
-// number of takes from the start, those that lie furthest from the recorded
-// takes of the label and from each other. There are fewer where draws keep
+// Takes makes n takes that pass the gates, in the order of choice (package
+// choice): every number of them from the start shows what all of them do. There are fewer where draws keep
 // failing: no more than four draws are tried for each take wanted.
 func (s *Source) Takes(n int) ([]*channels.Take, Tally) {
 	tally := Tally{Wanted: n}
@@ -61,39 +60,13 @@ func (s *Source) gates() *gate.Source {
 	return s.maker.training.Gates.Source(s.take)
 }
 
-// rankFrames is the number of frames at which takes are compared for rank.
-const rankFrames = 32
-
 // ranked brings takes into the order of choice and writes their rank.
 func (s *Source) ranked(takes []*channels.Take) []*channels.Take {
-	draws := make([][]float64, len(takes))
-	for i, t := range takes {
-		draws[i] = s.maker.sketch(t)
-	}
-	recorded := [][]float64{s.maker.sketch(s.take)}
-	for _, t := range s.maker.training.ofLabel(s.take.Label, s.take.ID) {
-		recorded = append(recorded, s.maker.sketch(t))
-	}
+	recorded := append([]*channels.Take{s.take}, s.maker.training.ofLabel(s.take.Label, s.take.ID)...)
 	out := make([]*channels.Take, 0, len(takes))
-	for rank, i := range choice.Order(draws, recorded) {
+	for rank, i := range choice.Takes(takes, recorded, s.maker.training.Scales) {
 		takes[i].Made.Rank = rank
 		out = append(out, takes[i])
-	}
-	return out
-}
-
-// sketch returns a take's scaled values at a few evenly spaced instants.
-func (m *Maker) sketch(t *channels.Take) []float64 {
-	w, last := t.Width(), float64(t.Frames()-1)
-	values := m.training.Scales.Apply(t)
-	out := make([]float64, 0, rankFrames*w)
-	for k := range rankFrames {
-		x := last * float64(k) / (rankFrames - 1)
-		i := min(int(x), t.Frames()-2)
-		along := x - float64(i)
-		for c := range w {
-			out = append(out, values[i*w+c]+along*(values[(i+1)*w+c]-values[i*w+c]))
-		}
 	}
 	return out
 }

@@ -19,6 +19,8 @@ type Training struct {
 	// sources are mixed with. A source need not be among them.
 	Takes []*channels.Take
 
+	Chart chart.Options // bones and limits; whether feet are free is the variation's to say
+
 	Measured *variation.Measured // how they differ; nil takes every size at its default
 	Coupling *group.Coupling     // how limbs share their timing; nil takes them as one
 	Gates    *gate.Gates         // what a draw must pass; nil lets everything pass

@@ -77,6 +77,9 @@ type Variation struct {
 	// of one limb always share theirs.
 	Coupling *float64
 
+	// Spare lists labels of whose takes none are made.
+	Spare []string
+
 	// FreeFeet lets feet that stand still in the source move.
 	FreeFeet bool
 }
@@ -163,7 +166,7 @@ type span struct {
 func partSpan(part variation.Part, size float64) span {
 	s := span{strings.ReplaceAll(string(part), " ", "_"), size, 0, 1}
 	switch part {
-	case variation.TimingLength:
+	case variation.TimingLength, variation.ShapeLength:
 		s.from, s.to = 0.02, 10
 	case variation.Trim:
 		s.to = maxTrim

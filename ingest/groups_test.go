@@ -44,7 +44,7 @@ func grouped(t *testing.T, groups string) string {
 func TestStatedGroups(t *testing.T) {
 	const sides = `[{"name":"left","limb":"arm","channels":["c3","c0"]},{"name":"right","limb":"","channels":["c1","c2"]}]`
 	byName := func(n int) []channels.Group { // all that the names say
-		g := channels.Group{Name: "all", Limb: "all"}
+		g := channels.Group{Name: "c0-c3", Limb: "all"}
 		for i := range n {
 			g.Channels = append(g.Channels, i)
 		}

@@ -45,6 +45,9 @@ func TestRecordedTakesPass(t *testing.T) {
 	const most = 0.10 // of takes, at any one gate
 	for _, s := range openSets {
 		t.Run(s.name, func(t *testing.T) {
+			if testing.Short() && s.name != "BasicMotions" && s.name != "Libras" {
+				t.Skip("long: left out under -short")
+			}
 			takes := s.read(t)
 			for _, k := range []int{2, 5} {
 				counts := passing(t, takes, k, 60, 4)

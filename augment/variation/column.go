@@ -51,9 +51,9 @@ func (f *form) columns() *columns {
 	}
 	c.timing = add(Timing, "", false, 2)
 	add(bend, "", false, 1)
-	c.trim = add(Trim, "", false, 2)
+	c.trim = add(Trim, "", false, 1)
 	c.duration = add(Duration, "", false, 1)
-	c.orientation = add(Orientation, "", true, 1)
+	c.orientation = add(Orientation, "", true, 0.7)
 	c.limbTiming = len(c.list)
 	if len(f.limbs) > 1 {
 		for _, name := range f.limbNames {
@@ -78,7 +78,7 @@ func (f *form) columns() *columns {
 	c.offset = together(Offset, 1)
 	c.shape = together(Shape, 2)
 	c.increment = together(increment, 2)
-	c.turn = groups(Orientation, true, 1)
+	c.turn = groups(Orientation, true, 0.7)
 	return c
 }
 

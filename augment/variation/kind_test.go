@@ -5,7 +5,6 @@ import (
 	"testing"
 
 	"strandwise/augment/variation"
-	"strandwise/channels"
 )
 
 func TestMotion(t *testing.T) {
@@ -32,42 +31,3 @@ func TestMotion(t *testing.T) {
 }
 
 func square(x float64) float64 { return x * x }
-
-// The kinds of the open sets, and figures near those the thresholds were set
-// by: ends activity 0.70 and 0.82 in the ongoing sets and 0.14–0.22 in the
-// others, periodicity 0.90 and 0.96 against 0–0.18 (the experiment behind the
-// recipe).
-func TestMotionOfOpenSets(t *testing.T) {
-	for _, c := range []struct {
-		set  string
-		want variation.Kind
-	}{
-		{"BasicMotions", variation.Ongoing}, {"Epilepsy", variation.Ongoing}, {"Libras", variation.Gesture},
-		{"NATOPS", variation.Gesture}, {"UWaveGestureLibrary", variation.Gesture}, {"UTD_MHAD_inertial", variation.Gesture},
-	} {
-		takes := openSet(t, c.set)
-		one := map[string]*channels.Take{} // the first take of each label is enough
-		for _, k := range takes {
-			if one[k.Label] == nil {
-				one[k.Label] = k
-			}
-		}
-		var few []*channels.Take
-		for _, k := range one {
-			few = append(few, k)
-		}
-		o := variation.Default()
-		m := measure(t, o, few...)
-		k := m.Motion("")
-		t.Logf("%s: %s, ends %.2f, periodicity %.2f by %d takes", c.set, k.Kind, k.Ends, k.Periodicity, k.Takes)
-		if k.Kind != c.want {
-			t.Errorf("%s: %+v, want %s", c.set, k, c.want)
-		}
-		switch {
-		case c.want == variation.Ongoing && (k.Ends < 0.6 || k.Periodicity < 0.6):
-			t.Errorf("%s: ends %v, periodicity %v", c.set, k.Ends, k.Periodicity)
-		case c.want == variation.Gesture && (k.Ends > 0.35 || k.Periodicity > 0.35):
-			t.Errorf("%s: ends %v, periodicity %v", c.set, k.Ends, k.Periodicity)
-		}
-	}
-}

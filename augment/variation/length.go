@@ -108,16 +108,26 @@ func incrementToShape(length float64) float64 {
 
 // bendToSlope returns the ratio of the mean squared distance of a timing map
 // from a straight line to the mean squared log slope over windows of an eighth
-// of the take, for small log rates of the correlation length.
+// of the take, for small log rates of the correlation length. With G(u) the
+// integral of the log rate from 0 to u, W(u) its variance and
+//
+//	c(u) = cov(G(u), G(1)) = (W(u) + W(1) − W(1−u)) / 2
+//
+// the first is the variance of G(u) − u·G(1), and the second that of
+// (G(u+h) − G(u))/h − G(1), both on average over u.
 func bendToSlope(length float64) float64 {
 	const steps = 32
-	whole, bend := meanVariance(1, length), 0.0
-	for k := 1; k < steps; k++ {
-		u := float64(k) / steps
-		// The variance of G(u) − u·G(1), G the integral of the log rate from 0.
-		bend += (1-u)*u*u*meanVariance(u, length) + u*(1-u)*(1-u)*meanVariance(1-u, length) - u*(1-u)*whole
+	variance := func(u float64) float64 { return u * u * meanVariance(max(u, 1e-9), length) }
+	whole := variance(1)
+	shared := func(u float64) float64 { return (variance(u) + whole - variance(1-u)) / 2 }
+	bend, slope, h := 0.0, 0.0, slopeWindow
+	for k := range steps {
+		u := (float64(k) + 0.5) / steps
+		bend += (variance(u) + u*u*whole - 2*u*shared(u)) / steps
+		v := u * (1 - h)
+		slope += (variance(h)/(h*h) + whole - 2*(shared(v+h)-shared(v))/h) / steps
 	}
-	return bend / steps / (meanVariance(slopeWindow, length) - whole)
+	return bend / slope
 }
 
 // within returns the standard deviation over a take, about the take's mean, of

@@ -140,15 +140,21 @@ func (m *Measured) addLength(f Figure, p Part, l lengths, ev evidence) Figure {
 // process is, the more of it a mean takes away.
 func (m *Measured) addTiming(f Figure, l lengths, ev evidence) {
 	length := m.addLength(f, TimingLength, l, ev)
-	for _, s := range []struct {
-		size   *float64
-		length float64
-	}{{&f.Measured, length.Measured}, {&f.Low, length.Low}, {&f.High, length.High}} {
-		if math.IsNaN(s.length) {
-			s.length = m.towards(TimingLength, f.Label, f.Of)
-		}
-		*s.size /= within(s.length)
+	if math.IsNaN(length.Measured) {
+		length.Measured = m.towards(TimingLength, f.Label, f.Of)
+		length.Low, length.High = length.Measured, length.Measured
 	}
+	left := within(length.Measured)
+	// The two do not depend on each other, so their errors add up in squares.
+	down := math.Hypot(math.Log(f.Measured/f.Low), math.Log(within(length.Low)/left))
+	up := math.Hypot(math.Log(f.High/f.Measured), math.Log(left/within(length.High)))
+	size := f.Measured / left
+	if size == 0 { // there is no logarithm
+		f.Low, f.High = 0, f.High/left
+	} else {
+		f.Low, f.High = size*math.Exp(-down), size*math.Exp(up)
+	}
+	f.Measured = size
 	m.add(f, ev.freedom)
 }
 
@@ -171,7 +177,7 @@ func (m *Measured) add(f Figure, freedom float64) {
 	case math.IsNaN(f.Measured):
 		f.Why = "hidden by what else differs"
 	}
-	f.Used = drawn(f.Part.serving(f.Raw, f.Measured), towards, freedom)
+	f.Used = shrunk(f.Part.serving(f.Raw, f.Measured), towards, freedom)
 	if math.IsNaN(f.Measured) {
 		f.Measured, f.Low, f.High = 0, 0, 0
 	}

@@ -93,7 +93,7 @@ func (e *engine) noiseOf(channel channels.Channel, c int, found []tremor, rate f
 	n := float64(len(found))
 	w := spread(replicas, leastSpread(n*(restWindow-3)), n*(restWindow-3))
 	f.Measured, f.Low, f.High = math.Sqrt(v), math.Sqrt(v*math.Exp(-w)), math.Sqrt(v*math.Exp(w))
-	f.Raw, f.Used = f.Measured, drawn(f.Measured, Noise.Default(), n)
+	f.Raw, f.Used = f.Measured, shrunk(f.Measured, Noise.Default(), n)
 	s := Spectrum{Channel: channel.Name, Rate: rate, Shares: make([]float64, bands)}
 	for _, t := range found {
 		for b, x := range t.shares[c] {
@@ -120,15 +120,29 @@ func (e *engine) tremor(t *channels.Take) tremor {
 	for i := 0; i+restWindow <= t.Frames(); i += restWindow / 4 {
 		moves = append(moves, move(scaled[i*w:(i+restWindow)*w], w))
 	}
-	limit := stillness * sum(moves) / float64(len(moves))
-	for k := 0; k < len(moves); k++ {
-		if moves[k] > limit {
-			continue
-		}
+	for _, from := range stillest(moves) {
 		for c := range w {
-			out.add(c, restOf(t.Data, w, c, k*restWindow/4))
+			out.add(c, restOf(t.Data, w, c, from*restWindow/4))
 		}
-		k += 3 // windows that count do not overlap
+	}
+	return out
+}
+
+// stillest returns which of the windows, a quarter of a window apart, rest:
+// the stillest first, and none that overlaps one before it.
+func stillest(moves []float64) []int {
+	limit := stillness * sum(moves) / float64(len(moves))
+	var order, out []int
+	for k, d := range moves {
+		if d <= limit {
+			order = append(order, k)
+		}
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(moves[a], moves[b]) })
+	for _, k := range order {
+		if !slices.ContainsFunc(out, func(o int) bool { return max(o-k, k-o) < 4 }) {
+			out = append(out, k)
+		}
 	}
 	return out
 }

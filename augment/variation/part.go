@@ -126,8 +126,8 @@ func (p Part) serving(raw, measured float64) float64 {
 // prior is how many takes more than labels weigh as much as the default.
 const prior = 10
 
-// drawn returns a value drawn towards another by how little is behind it.
-func drawn(value, towards, freedom float64) float64 {
+// shrunk returns a value drawn towards another by how little is behind it.
+func shrunk(value, towards, freedom float64) float64 {
 	return (freedom*value + prior*towards) / (freedom + prior)
 }
 

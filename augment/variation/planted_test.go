@@ -12,7 +12,11 @@ import (
 	"strandwise/channels"
 )
 
-var runs = flag.Int("runs", 3, "recordings with planted sizes to measure")
+// few is how many recordings with planted sizes are measured unless more are
+// asked for.
+const few = 2
+
+var runs = flag.Int("runs", few, "recordings with planted sizes to measure")
 
 // planted is what takes are made with.
 type planted struct {
@@ -176,56 +180,102 @@ func apart(x []float64) []float64 {
 
 func clip(x, most float64) float64 { return min(max(x, -most), most) }
 
-func TestPlanted(t *testing.T) {
-	p := planted{timing: 0.2, length: 0.2, trim: 0.04, duration: 0.1, turn: 0.15, amplitude: 0.15, gain: 0.1, offset: 0.05, shape: 0.1, bend: 0.2, noise: 0.03, frames: 90, labels: 5, takes: 8}
-	truth := map[variation.Part]float64{
-		variation.Timing: p.timing, variation.TimingLength: p.length, variation.Trim: p.trim, variation.Duration: p.duration, variation.Orientation: p.turn,
-		variation.Amplitude: p.amplitude, variation.Gain: p.gain, variation.Offset: p.offset, variation.Shape: p.shape, variation.Noise: p.noise, variation.ShapeLength: p.bend,
+// tally is how the figures of one part came out over recordings.
+type tally struct {
+	runs, covered, below, above, hidden int
+	measured, raw, width                float64 // sums, relative to the truth
+}
+
+func (g *tally) add(f variation.Figure, truth float64) {
+	g.runs++
+	switch {
+	case f.High == 0:
+		g.hidden++
+	case f.Low > truth:
+		g.above++
+	case f.High < truth:
+		g.below++
+	default:
+		g.covered++
 	}
-	type tally struct {
-		n, in, below, above, none int
-		ratio, raw, width         float64
+	g.measured += f.Measured / truth
+	g.raw += f.Raw / truth
+	g.width += (f.High - f.Low) / truth
+}
+
+// usual are recordings of five labels and eight takes each.
+func usual() planted {
+	return planted{
+		timing: 0.2, length: 0.2, trim: 0.04, duration: 0.1, turn: 0.15, amplitude: 0.15, gain: 0.15,
+		offset: 0.1, shape: 0.1, bend: 0.2, noise: 0.03, frames: 90, labels: 5, takes: 8,
 	}
-	got := map[string]*tally{}
-	var order []string
-	for seed := range uint64(*runs) {
+}
+
+// short are recordings of many labels with few takes each, shorter, rougher
+// and noisier.
+func short() planted {
+	return planted{
+		timing: 0.15, length: 0.12, trim: 0.025, duration: 0.2, turn: 0.25, amplitude: 0.25, gain: 0.2,
+		offset: 0.15, shape: 0.2, bend: 0.1, noise: 0.06, frames: 60, labels: 12, takes: 3,
+	}
+}
+
+func (p planted) truth() map[variation.Part]float64 {
+	return map[variation.Part]float64{
+		variation.Timing: p.timing, variation.TimingLength: p.length, variation.Trim: p.trim, variation.Duration: p.duration,
+		variation.Orientation: p.turn, variation.Amplitude: p.amplitude, variation.Gain: p.gain, variation.Offset: p.offset,
+		variation.Shape: p.shape, variation.ShapeLength: p.bend, variation.Noise: p.noise,
+	}
+}
+
+// recover measures recordings with these sizes, one for each seed, and tells
+// how often each figure's interval held the truth.
+func (p planted) recover(t *testing.T, seeds int, o variation.Options) (parts []string, tallies map[string]*tally) {
+	tallies = make(map[string]*tally)
+	truth := p.truth()
+	for seed := range uint64(seeds) {
 		takes, scales := p.record(seed)
-		o := variation.Default()
 		o.Seed = seed
 		m, err := variation.Measure(context.Background(), takes, scales, o)
 		if err != nil {
 			t.Fatal(err)
 		}
 		for _, f := range m.Figures {
-			if f.Label != "" || f.Part == variation.ChannelGain {
+			if truth[f.Part] == 0 || f.Label != "" {
 				continue
 			}
 			key := string(f.Part) + " " + f.Of
-			if got[key] == nil {
-				got[key] = &tally{}
-				order = append(order, key)
+			if tallies[key] == nil {
+				tallies[key] = new(tally)
+				parts = append(parts, key)
 			}
-			g := got[key]
-			want := truth[f.Part]
-			g.n++
-			switch {
-			case f.Default:
-				g.none++
-			case f.Low > want:
-				g.above++
-			case f.High < want:
-				g.below++
-			default:
-				g.in++
-			}
-			g.ratio += f.Measured / want
-			g.raw += f.Raw / want
-			g.width += (f.High - f.Low) / want
+			tallies[key].add(f, truth[f.Part])
 		}
 	}
-	for _, k := range order {
-		g := got[k]
-		n := float64(g.n)
-		t.Logf("%-22s covered %3d of %3d (low %d, high %d, none %d)  measured/truth %.3f raw/truth %.3f width %.2f", k, g.in, g.n, g.below, g.above, g.none, g.ratio/n, g.raw/n, g.width/n)
+	return parts, tallies
+}
+
+// Recordings made with known sizes are measured; the interval of each figure
+// holds the size nearly always, and the figures are near it on average. With
+// -runs 40 the log shows how often, for two kinds of recordings.
+func TestPlanted(t *testing.T) {
+	o := variation.Default()
+	o.Draws = 240
+	kinds := map[string]planted{"usual": usual()}
+	if *runs > few {
+		o = variation.Default()
+		kinds["short"] = short()
+	}
+	for name, p := range kinds {
+		parts, tallies := p.recover(t, *runs, o)
+		for _, k := range parts {
+			g := tallies[k]
+			n := float64(g.runs)
+			t.Logf("%s: %-20s covered %d of %d (under %d, over %d, hidden %d), measured %.2f of the truth, raw %.2f, width %.2f",
+				name, k, g.covered, g.runs, g.below, g.above, g.hidden, g.measured/n, g.raw/n, g.width/n)
+			if missed := g.below + g.above; missed > 1+g.runs/10 {
+				t.Errorf("%s: %s: the interval missed the truth in %d of %d recordings", name, k, missed, g.runs)
+			}
+		}
 	}
 }

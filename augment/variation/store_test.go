@@ -65,7 +65,9 @@ func TestReadRefuses(t *testing.T) {
 		{"a size that is too large", `"used": 0.21`, `"used": 21`, "used 21; it must lie between 0 and 3"},
 		{"a figure twice", `"label": "wave",
    "of": "left"`, `"of": "left"`, "figure 6: amplitude of left comes twice, first as figure 2"},
-		{"shares that do not add up", `0.5,`, `0.4,`, "must add up to 1"},
+		{"shares that do not add up", `0.5,
+    0.3`, `0.4,
+    0.3`, "must add up to 1"},
 		{"a coupling above 1", `"rho": 0.7`, `"rho": 1.7`, "coupling of left and right"},
 		{"something behind", text, text + "{}", "something follows"},
 	} {

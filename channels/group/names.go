@@ -12,10 +12,15 @@ import (
 // tracked point and one quantity (left_wrist.accel.x, .y, .z) form a group.
 // Groups of one tracked point share its limb, since a sensor cannot move apart
 // from itself; tracked points of one arm or leg (left_wrist, left_elbow) share
-// that limb. When no name says anything, all channels are one group.
+// that limb. When no name says anything, runs of numbered channels are groups of
+// three axes where that goes without a rest, and all are one limb.
 func FromNames(list []channels.Channel) []channels.Group {
-	if !slices.ContainsFunc(list, placed) {
-		return []channels.Group{everything(list)}
+	if nameless(list) || !slices.ContainsFunc(list, placed) {
+		groups := numbered(list)
+		for i := range groups {
+			groups[i].Limb = "all"
+		}
+		return groups
 	}
 	var out []channels.Group
 	for i, c := range list {

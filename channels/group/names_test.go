@@ -60,7 +60,8 @@ func TestFromNames(t *testing.T) {
 		{"one sensor without a place", "ax ay az gx gy gz", "accel@body:0 1 2; gyro@body:3 4 5"},
 		{"some that say nothing", "ax temperature battery", "accel@body:0; other@body:1 2"},
 		{"nothing said, two", "x y", "all@all:0 1"},
-		{"nothing said, twenty-four", strings.Join(numbered(24), " "), "all@all:0 1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 17 18 19 20 21 22 23"},
+		{"nothing said, six", strings.Join(numbered(6), " "), "c0-c2@all:0 1 2; c3-c5@all:3 4 5"},
+		{"nothing said, five", strings.Join(numbered(5), " "), "c0-c4@all:0 1 2 3 4"},
 	} {
 		got := group.FromNames(named(strings.Fields(c.headers)...))
 		if diff := cmp.Diff(c.want, written(got)); diff != "" {

@@ -4,7 +4,6 @@ import (
 	"context"
 	"slices"
 
-	"strandwise/augment"
 	"strandwise/channels"
 	"strandwise/classify"
 )
@@ -54,13 +53,9 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noG
 	return s, nil
 }
 
-// training returns what a maker is to know of the takes that train.
-func (s *survey) training() augment.Training {
-	t := augment.Training{Scales: &s.scales}
-	for _, take := range append(s.sample.Takes(), s.rest.Takes()...) {
-		if take.Split != channels.Test {
-			t.Takes = append(t.Takes, take)
-		}
-	}
-	return t
+// training returns a bounded number of the takes that train, of each label.
+func (s *survey) training() []*channels.Take {
+	return slices.DeleteFunc(append(s.sample.Takes(), s.rest.Takes()...), func(t *channels.Take) bool {
+		return t.Split == channels.Test
+	})
 }
