@@ -24,6 +24,12 @@ type coupling struct {
 	rho      float64
 }
 
+// untold is the coupling of limbs of which there are too few takes to tell: it
+// did as well as full coupling on hands that move together and nearly as well as
+// none on hands that do not. DEVELOPERS.md has the figures. The limbs of a
+// skeleton are one body and are taken as fully coupled.
+const untold = 0.5
+
 func (m *Maker) coupling(t *channels.Take, limbs []string) (*coupling, error) {
 	c := &coupling{maker: m, take: t.ID, limbs: limbs, rho: 1}
 	if m.variation.Coupling != nil {
@@ -35,6 +41,9 @@ func (m *Maker) coupling(t *channels.Take, limbs []string) (*coupling, error) {
 	}
 	correlations := m.training.Coupling.Matrix(t.Label)
 	if correlations == nil {
+		if t.Skeleton == nil {
+			c.rho = untold
+		}
 		return c, nil
 	}
 	root, err := group.SquareRoot(correlations)

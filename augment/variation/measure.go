@@ -174,8 +174,8 @@ func (m *Measured) add(f Figure, freedom float64) {
 	switch {
 	case math.IsNaN(f.Raw):
 		f.Measured, f.Why = f.Raw, "no pair of takes tells it"
-	case math.IsNaN(f.Measured):
-		f.Why = "hidden by what else differs"
+	case math.IsNaN(f.Measured), f.High == 0 && f.Raw > 0:
+		f.Measured, f.Why = math.NaN(), "hidden by what else differs"
 	}
 	f.Used = shrunk(f.Part.serving(f.Raw, f.Measured), towards, freedom)
 	if math.IsNaN(f.Measured) {

@@ -91,7 +91,8 @@ func (e *engine) noiseOf(channel channels.Channel, c int, found []tremor, rate f
 	}
 	v := variance(func(int) float64 { return 1 })
 	n := float64(len(found))
-	w := spread(replicas, leastSpread(n*(restWindow-3)), n*(restWindow-3))
+	freedom := n * (restWindow - 3) / 4 // what still moves in a rest makes windows of one take alike
+	w := spread(replicas, leastSpread(freedom), freedom)
 	f.Measured, f.Low, f.High = math.Sqrt(v), math.Sqrt(v*math.Exp(-w)), math.Sqrt(v*math.Exp(w))
 	f.Raw, f.Used = f.Measured, shrunk(f.Measured, Noise.Default(), n)
 	s := Spectrum{Channel: channel.Name, Rate: rate, Shares: make([]float64, bands)}
@@ -118,7 +119,12 @@ func (e *engine) tremor(t *channels.Take) tremor {
 	scaled := e.scales.Apply(t)
 	var moves []float64
 	for i := 0; i+restWindow <= t.Frames(); i += restWindow / 4 {
-		moves = append(moves, move(scaled[i*w:(i+restWindow)*w], w))
+		window := scaled[i*w : (i+restWindow)*w]
+		if held(window, w) {
+			moves = append(moves, math.Inf(1))
+		} else {
+			moves = append(moves, move(window, w))
+		}
 	}
 	for _, from := range stillest(moves) {
 		for c := range w {
@@ -129,9 +135,16 @@ func (e *engine) tremor(t *channels.Take) tremor {
 }
 
 // stillest returns which of the windows, a quarter of a window apart, rest:
-// the stillest first, and none that overlaps one before it.
+// the stillest first, and none that overlaps one before it. Of a window that
+// tells nothing the movement is infinite.
 func stillest(moves []float64) []int {
-	limit := stillness * sum(moves) / float64(len(moves))
+	total, n := 0.0, 0.0
+	for _, d := range moves {
+		if !math.IsInf(d, 1) {
+			total, n = total+d, n+1
+		}
+	}
+	limit := stillness * total / n
 	var order, out []int
 	for k, d := range moves {
 		if d <= limit {
@@ -145,6 +158,17 @@ func stillest(moves []float64) []int {
 		}
 	}
 	return out
+}
+
+// held tells whether no channel changes over a window: a sensor at rest
+// trembles, so these are frames filled in, not a rest.
+func held(window []float64, width int) bool {
+	for i := width; i < len(window); i++ {
+		if window[i] != window[i-width] {
+			return false
+		}
+	}
+	return true
 }
 
 // move returns the root mean square distance of the means of a window's
@@ -171,7 +195,7 @@ func move(window []float64, width int) float64 {
 func restOf(data []float64, width, c, from int) []float64 {
 	out := make([]float64, restWindow)
 	for i := range out {
-		out[i] = data[(from+i)*width+c]
+		out[i] = data[(from+i)*width+c] - data[from*width+c] // exactly 0 where nothing changes
 	}
 	return out
 }

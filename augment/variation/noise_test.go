@@ -43,6 +43,23 @@ func TestNoiseAtRest(t *testing.T) {
 	}
 }
 
+// Frames filled in at the end of a take, all the same, are no rest.
+func TestFilledFramesAreNoRest(t *testing.T) {
+	sd := []float64{0.1, 0.4}
+	takes := resting(t, 2, sd)
+	for _, k := range takes {
+		last := k.Frame(k.Frames() - 1)
+		for range 90 {
+			k.Time = append(k.Time, k.Time[len(k.Time)-1]+0.02)
+			k.Data = append(k.Data, last...)
+		}
+	}
+	m := measure(t, quick(), takes...)
+	if f, _ := m.Find(variation.Noise, "", "accel.y"); f.Low > sd[1] || f.High < sd[1] {
+		t.Errorf("noise of %v: %+v", sd[1], f)
+	}
+}
+
 func TestNoNoiseWithoutRest(t *testing.T) {
 	l := layoutOf(t, []string{"accel.x"})
 	m := measure(t, quick(), takeOf(l, "wave", 0, 90, func(_ int, u float64) float64 { return 40 * u }), takeOf(l, "wave", 1, 9, func(_ int, u float64) float64 { return u }))

@@ -101,13 +101,15 @@ func (p Part) Default() float64 {
 // Those of timing, trim and orientation are the recipe's rules, found by
 // experiment on open recordings: timing and orientation are kept within bounds
 // outside of which takes were of no use, orientation is halved and trim
-// lengthened, all from the plain number. The others are kept from growing
-// beyond about twice the recipe's sizes, since nothing shows that more serves.
+// lengthened, all from the plain number. The others are kept within about
+// twice the recipe's sizes, since nothing shows that more serves.
 func (p Part) serving(raw, measured float64) float64 {
 	switch p {
 	case Timing:
 		return min(max(raw, 0.1), 0.4)
-	case TimingLength, ShapeLength:
+	case TimingLength:
+		return min(max(measured, 0.1), 0.3)
+	case ShapeLength:
 		return min(max(measured, 0.05), 0.5)
 	case Trim:
 		return min(1.3*raw, 0.1)
