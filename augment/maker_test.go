@@ -217,6 +217,27 @@ func TestTakesAreTheFirstDrawsInOrder(t *testing.T) {
 	})
 }
 
+// The place of a dropped take goes to the next in rank, and a further draw makes
+// the number up.
+func TestDroppedTakesAreReplaced(t *testing.T) {
+	take := wander(sensorLayout(t, 2), "take", 50, 1)
+	v := augment.Default()
+	all, _ := source(t, v, 1, take).Takes(6)
+	v.Dropped = map[string]bool{all[1].ID: true, all[4].ID: true}
+	got, tally := source(t, v, 1, take).Takes(6)
+	var ids []string
+	for rank, g := range got {
+		ids = append(ids, g.ID)
+		if g.Made.Rank != rank {
+			t.Errorf("%s has rank %d, want %d", g.ID, g.Made.Rank, rank)
+		}
+	}
+	want := []string{all[0].ID, all[2].ID, all[3].ID, all[5].ID, "take~6", "take~7"}
+	if !slices.Equal(ids, want) || tally.Dropped != 2 || tally.Made != 6 {
+		t.Errorf("%v, want %v; tally %+v", ids, want, tally)
+	}
+}
+
 func TestDrawsTellWhereTheyComeFrom(t *testing.T) {
 	eachMethod(t, func(t *testing.T, v augment.Variation) {
 		take := wander(sensorLayout(t, 2), "take", 50, 1)

@@ -52,6 +52,10 @@ func (m *Maker) extent(label, group string) extent {
 	}
 }
 
+// mostPartners bounds the takes that one source is mixed with, which are drawn
+// from those of its label: each has to be aligned to it.
+const mostPartners = 8
+
 // sizeLength is the correlation length of smooth changes of size, as a fraction
 // of the take.
 const sizeLength = 0.2
@@ -84,8 +88,9 @@ func newRecipeSource(m *Maker, t *channels.Take) (*recipeSource, error) {
 		s.texture = newTexture(scaled, c.Width())
 		return s, nil
 	}
-	for _, other := range m.training.ofLabel(t.Label, t.ID) {
-		s.partners = append(s.partners, &partner{take: other})
+	others := m.training.ofLabel(t.Label, t.ID)
+	for _, i := range s.generator(0, partnersKey).Perm(len(others))[:min(len(others), mostPartners)] {
+		s.partners = append(s.partners, &partner{take: others[i]})
 	}
 	return s, nil
 }
@@ -114,9 +119,10 @@ func fractions(clock []float64) []float64 {
 // Names under which the parts of a draw have their generators, beside those of
 // limbs and parts of the chart.
 const (
-	wholeKey   = "\x00take"
-	textureKey = "\x00texture"
-	noiseKey   = "\x00noise"
+	wholeKey    = "\x00take"
+	textureKey  = "\x00texture"
+	noiseKey    = "\x00noise"
+	partnersKey = "\x00partners"
 )
 
 func (s *recipeSource) draw(draw int, p map[string]float64) (time, data []float64) {

@@ -80,6 +80,9 @@ type Variation struct {
 	// Spare lists labels of whose takes none are made.
 	Spare []string
 
+	// Dropped holds the ids of synthetic takes that a person does not want.
+	Dropped map[string]bool
+
 	// FreeFeet lets feet that stand still in the source move.
 	FreeFeet bool
 }

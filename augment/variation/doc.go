@@ -30,6 +30,10 @@
 // the logarithm over the weightings, never less than that of a variance with
 // as many degrees of freedom, times the quantile of Student's distribution.
 //
+// Figures that the test of this package plants come back: see TestPlanted.
+// Where a part is hidden by the others, as timing is where takes of a label
+// differ much in shape, the figure says so instead of giving a size.
+//
 // # What is used
 //
 // [Figure.Used] is what a maker of takes should use. It is the documented

@@ -64,8 +64,8 @@ func (l lengths) find(all evidence, centre float64) (length, low, high float64) 
 	}
 	mean := (shown*square(priorSpread) + math.Log(centre)*square(open)) / (square(priorSpread) + square(open))
 	sd := priorSpread * open / math.Hypot(priorSpread, open)
-	// The way to the centre is no evidence: half of it counts as error.
-	w := student(all.freedom) * math.Hypot(sd, (mean-shown)/2)
+	// The way to the centre is no evidence: it counts as error.
+	w := student(all.freedom) * math.Hypot(sd, mean-shown)
 	return math.Exp(mean), math.Exp(mean - w), min(1, math.Exp(mean+w))
 }
 

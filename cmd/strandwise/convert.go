@@ -33,7 +33,7 @@ Several takes of skeletons become several BVH files: OUT is a folder, as in
 A file that exists is only replaced with --replace. When anything fails, no file
 is left behind.`,
 		Example: `  strandwise convert recordings --pattern '{subject}/{label}_{session}_{take}.csv' all.parquet
-  strandwise convert walk.c3d --stream analog walk.csv
+  strandwise convert walk.c3d --signals analog walk.csv
   strandwise convert dance.bvh --length-unit cm - --as arrow | consumer`,
 		RunE: command(func(c *cobra.Command, args []string) error {
 			if len(args) == 0 {

@@ -181,7 +181,7 @@ func emptyFields(t *testing.T, path string) int {
 // TestConvertAnalog converts the analog channels of a C3D file, one of them in
 // g, on their own clock of two samples a frame of 100 Hz.
 func TestConvertAnalog(t *testing.T) {
-	o := strandwise(t, "", "convert", "../../ingest/c3d/testdata/cue.c3d", "-", "--as", "csv", "--stream", "analog")
+	o := strandwise(t, "", "convert", "../../ingest/c3d/testdata/cue.c3d", "-", "--as", "csv", "--signals", "analog")
 	want := "take,label,subject,session,frame,time_s,Fx1,ACC1\n"
 	for i := range 6 {
 		want += fmt.Sprintf("cue,,,,%d,%v,%d,%v\n", i, float64(i)/200, i, float64(2*(i+1))*channels.StandardGravity)

@@ -18,9 +18,10 @@ func TestGrowSealsASetThatVerifies(t *testing.T) {
 	must(t, "grow", csv, "--rate", "50", "--per-take", "4", "--tables", "takes,frames", "--out", set)
 	files := slices.Sorted(maps.Keys(contents(t, set)))
 	want := []string{
+		"CARD.md", "croissant.json",
 		"frames/split=test/part-00000.parquet", "frames/split=train/part-00000.parquet",
-		"manifest.json", "score.json",
-		"takes/split=test/part-00000.parquet", "takes/split=train/part-00000.parquet",
+		"harm.json", "manifest.json", "realism.json", "score.json",
+		"takes/split=test/part-00000.parquet", "takes/split=train/part-00000.parquet", "variation.json",
 	}
 	if diff := cmp.Diff(want, files); diff != "" {
 		t.Errorf("files of the set (-want +got):\n%s", diff)

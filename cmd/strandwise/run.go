@@ -53,7 +53,7 @@ func Run(ctx context.Context, s Streams, args []string) error {
 	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
 		return &job.UsageError{Problem: fmt.Sprintf("%v; '%s -h' lists the flags", err, c.CommandPath())}
 	})
-	root.AddCommand(newDemo(s), newCheck(s), newConvert(s), newGrow(s), newScore(s), newVerify(s))
+	root.AddCommand(newDemo(s), newCheck(s), newConvert(s), newGroup(s), newMeasure(s), newGrow(s), newScore(s), newSeal(s), newVerify(s), newLook(s))
 	return asUsage(root.ExecuteContext(ctx))
 }
 
@@ -87,9 +87,13 @@ func command(do func(c *cobra.Command, args []string) error) func(*cobra.Command
 // process.
 func ExitCode(s Streams, err error) int {
 	var usage *job.UsageError
+	var unfinished *job.UnfinishedError
 	switch {
 	case err == nil:
 		return exitDone
+	case errors.Is(err, context.Canceled) && errors.As(err, &unfinished):
+		fmt.Fprintf(s.Err, "strandwise: interrupted; %s\n", unfinished.GoOn())
+		return exitFault
 	case errors.Is(err, context.Canceled):
 		fmt.Fprintln(s.Err, "strandwise: interrupted; nothing unfinished was left behind")
 		return exitFault

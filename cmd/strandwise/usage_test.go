@@ -29,7 +29,7 @@ func TestWrongUsageSaysWhatIsLegal(t *testing.T) {
 		{"distance", grow("--distance", "taxi"), []string{"--distance", "dtw-independent"}},
 		{"normalise", grow("--normalise", "max"), []string{"--normalise", "none, z"}},
 		{"protocol", grow("--protocol", "best"), []string{"--protocol", "given, subject, session, pooled"}},
-		{"table", grow("--tables", "rows"), []string{"--tables", "takes and frames"}},
+		{"table", grow("--tables", "rows"), []string{"--tables", "takes, frames and windows"}},
 		{"band", grow("--band", "2"), []string{"--band"}},
 		{"spread", grow("--spread", "0.5"), []string{"--spread", "1/3"}},
 		{"knots", grow("--knots", "1"), []string{"--knots", "3 or more"}},

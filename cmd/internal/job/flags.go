@@ -4,6 +4,8 @@ import (
 	"runtime"
 
 	"github.com/spf13/pflag"
+
+	"strandwise/export"
 )
 
 // NewPlan returns a plan with every default in place.
@@ -11,19 +13,24 @@ func NewPlan() *Plan {
 	return &Plan{
 		Interpolate: "linear",
 		LongestGap:  3,
-		Method:      "timed-path",
-		PerTake:     32,
-		Seed:        1,
-		Learner:     "template",
-		Distance:    []string{"euclidean-dependent", "dtw-dependent"},
-		Normalise:   "none",
-		Band:        0.1,
-		Kernels:     300,
-		Ridge:       "100",
-		Repeats:     10,
-		Reject:      true,
-		Tables:      []string{"takes"},
-		Workers:     runtime.GOMAXPROCS(0),
+		Method:      []string{"recipe"}, Reach: 1, Kind: "measured", Timing: "smooth", Spread: 0.03, TimeShare: 1, Mix: 0.6, PathShare: 0.25, Coupling: measured,
+		PerTake:       32,
+		Seed:          1,
+		Learner:       "template",
+		Distance:      []string{"euclidean-dependent", "dtw-dependent"},
+		Normalise:     "none",
+		Band:          0.1,
+		Kernels:       300,
+		Ridge:         "100",
+		Repeats:       10,
+		Reject:        true,
+		Tables:        []string{"takes"},
+		WindowLength:  "64",
+		WindowPadding: "hold",
+		Compression:   "snappy",
+		RowGroupBytes: export.DefaultRowGroupBytes,
+		FileBytes:     export.DefaultFileBytes,
+		Workers:       runtime.GOMAXPROCS(0),
 	}
 }
 
@@ -38,7 +45,7 @@ func (p *Plan) ReadFlags(f *pflag.FlagSet) {
 	f.StringArrayVar(&p.Group, "group", p.Group, "channel group, NAME=CHANNELS or NAME@LIMB=CHANNELS, such as 'left=c0-c2,c6-c8' (repeatable)")
 	f.StringSliceVar(&p.LeaveOut, "leave-out", p.LeaveOut, "columns that are no channels, by name or glob")
 	f.StringVar(&p.LengthUnit, "length-unit", p.LengthUnit, "unit of length of files that carry none (BVH): m, cm, mm or in")
-	f.StringVar(&p.Stream, "stream", p.Stream, "what of a C3D file is read: points or analog")
+	f.StringVar(&p.Signals, "signals", p.Signals, "what of a C3D file is read: points or analog")
 	f.StringSliceVar(&p.Repair, "repair", p.Repair, "what may be repaired: clock (a uniform clock, short gaps filled), order, duplicates, split, or all")
 	f.Float64Var(&p.ToRate, "to-rate", p.ToRate, "bring recordings to this many frames per second; implies --repair clock")
 	f.StringVar(&p.Interpolate, "interpolate", p.Interpolate, "how repairs fill: linear or cubic")
@@ -50,15 +57,26 @@ func (p *Plan) ReadFlags(f *pflag.FlagSet) {
 
 // MakeFlags adds the flags that say how to make takes.
 func (p *Plan) MakeFlags(f *pflag.FlagSet) {
-	f.StringVar(&p.Method, "method", p.Method, "how takes are made: timed-path, or path (the published method)")
+	f.StringSliceVar(&p.Method, "method", p.Method, "how takes are made: recipe, or a published method by name; several with weights, such as recipe=3,path=1")
 	f.IntVar(&p.PerTake, "per-take", p.PerTake, "synthetic takes for each recorded one")
 	f.Uint64Var(&p.Seed, "seed", p.Seed, "seed of every random draw")
-	f.IntVar(&p.Knots, "knots", p.Knots, "points at which a path is resampled; few vary much (default by method)")
-	f.Float64Var(&p.Spread, "spread", p.Spread, "variance of the intervals between knots, below 1/3 (default by method)")
-	f.Float64Var(&p.TimeShare, "time-share", p.TimeShare, "weight of time against arc length along a path, 0 to 1 (default by method)")
-	f.Float64Var(&p.Straighten, "straighten", p.Straighten, "strength of displacement normalisation, 0 to 1 (default by method)")
-	f.Float64Var(&p.Trim, "trim", p.Trim, "standard deviation of the shift of start and end, as a fraction of the take (default by method)")
-	f.Float64Var(&p.Coupling, "coupling", p.Coupling, "how far limbs share their timing, 0 to 1 (default by method)")
+	f.Float64Var(&p.Reach, "reach", p.Reach, "factor on how far takes vary, 1 as measured")
+	f.StringVar(&p.Kind, "kind", p.Kind, "kind of motion: gesture, ongoing (a stretch of a motion that repeats) or measured")
+	f.StringVar(&p.Timing, "timing", p.Timing, "how timing is drawn: smooth (the rate of playing) or knots (intervals between a few)")
+	f.IntVar(&p.Knots, "knots", p.Knots, "points at which a path is resampled; few vary much (0: 6, or by the published regression for path)")
+	f.Float64Var(&p.Spread, "spread", p.Spread, "variance of the intervals between knots, below 1/3")
+	f.Float64Var(&p.TimeShare, "time-share", p.TimeShare, "weight of time against arc length along a path, 0 to 1")
+	f.Float64Var(&p.Mix, "mix", p.Mix, "largest share of another take of the label, 0 to 1")
+	f.Float64Var(&p.PathShare, "path-share", p.PathShare, "share of draws by published path resampling where all channels are positions, 0 to 1")
+	f.StringVar(&p.Coupling, "coupling", p.Coupling, "how far limbs share their timing: 0 to 1, or measured")
+	f.BoolVar(&p.FreeFeet, "free-feet", p.FreeFeet, "let feet move that stand still in the source")
+	f.StringArrayVar(&p.Limit, "limit", p.Limit, "values between which a channel stays, CHANNEL=LOW..HIGH (repeatable)")
+	f.StringSliceVar(&p.Gate, "gate", p.Gate, "what takes must pass: GATE=THRESHOLD or GATE=off; all=off for none (finite, range, jerk, bandwidth, bones, stray, copy)")
+	f.IntVar(&p.Keep, "keep", p.Keep, "of the synthetic takes made of each recorded one, how many are kept, the best choice first; 0 for all")
+	f.StringSliceVar(&p.Spare, "spare", p.Spare, "labels that are left as recorded")
+	f.StringVar(&p.Marks, "marks", p.Marks, "set whose marks are honoured: takes that a person dropped in look are replaced by the next in rank")
+	f.StringVar(&p.Variation, "variation", p.Variation, "file of measured variation, from measure --json or a set, to use instead of measuring")
+	p.sizeFlags(f)
 }
 
 // ScoreFlags adds the flags that say how to score.
@@ -88,6 +106,21 @@ func (p *Plan) WorkFlags(f *pflag.FlagSet) {
 
 // WriteFlags adds the flags that say what to write.
 func (p *Plan) WriteFlags(f *pflag.FlagSet) {
-	f.StringVar(&p.Out, "out", p.Out, "folder to write the set into; must not exist or be empty")
-	f.StringSliceVar(&p.Tables, "tables", p.Tables, "tables of the set: takes (one row a take), frames (one row a frame)")
+	f.StringVar(&p.Out, "out", p.Out, "folder to write the set into, which must not exist, be empty or hold an unfinished set of the same plan; - is --stream")
+	f.StringSliceVar(&p.Tables, "tables", p.Tables, "tables of the set: takes (one row a take), frames (one row a frame), windows (one row a stretch of so many frames)")
+	f.StringVar(&p.WindowLength, "window-length", p.WindowLength, "length of a window in frames, such as 64, or in seconds, such as 0.5s")
+	f.StringVar(&p.WindowHop, "window-hop", p.WindowHop, "from the start of one window to that of the next, in frames or seconds (default half the length)")
+	f.StringVar(&p.WindowPadding, "window-padding", p.WindowPadding, "what fills a window at the end of a take: hold (its last frame), zero, or none (no such window)")
+	f.BoolVar(&p.WindowInt16, "window-int16", p.WindowInt16, "write windows as 16-bit numbers, with one scale for each channel group")
+	f.StringVar(&p.Compression, "compression", p.Compression, "of the Parquet files: snappy, zstd or none")
+	f.Int64Var(&p.RowGroupBytes, "row-group-bytes", p.RowGroupBytes, "bytes of values after which a row group ends")
+	f.Int64Var(&p.FileBytes, "file-bytes", p.FileBytes, "bytes that a Parquet file shall about have, and at most twice")
+	f.IntVar(&p.Buckets, "buckets", p.Buckets, "parts the set is written in, and at most so many shards; 0 for as many as give files of --file-bytes")
+	f.BoolVar(&p.HideSubjects, "hide-subjects", p.HideSubjects, "replace names of people everywhere in the set by hashes under --subject-salt")
+	f.StringVar(&p.SubjectSalt, "subject-salt", p.SubjectSalt, "file of 16 random bytes or more to hide names under; keep it secret, and for the next set")
+	f.StringVar(&p.Title, "title", p.Title, "name of the set, for its card and croissant.json")
+	f.StringVar(&p.Creator, "creator", p.Creator, "the person or body that answers for the set")
+	f.StringVar(&p.Licence, "licence", p.Licence, "URL of the licence the set is given under")
+	f.StringVar(&p.URL, "url", p.URL, "URL of the page the set is found at")
+	f.StringVar(&p.Published, "published", p.Published, "day the set is published, such as 2026-12-31")
 }

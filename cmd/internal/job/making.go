@@ -16,6 +16,7 @@ import (
 	"strandwise/channels/chart"
 	"strandwise/channels/group"
 	"strandwise/classify"
+	"strandwise/export/marks"
 )
 
 // making is how a plan makes takes.
@@ -40,6 +41,9 @@ func (p *Plan) making() (*making, error) {
 	if m.limits, err = p.limits(); err != nil {
 		return nil, err
 	}
+	if m.variation.Dropped, err = p.dropped(); err != nil {
+		return nil, err
+	}
 	if p.Variation != "" {
 		file, err := os.Open(p.Variation)
 		if err != nil {
@@ -51,6 +55,24 @@ func (p *Plan) making() (*making, error) {
 		}
 	}
 	return m, nil
+}
+
+// dropped reads which takes a person dropped from the set of an earlier run.
+func (p *Plan) dropped() (map[string]bool, error) {
+	if p.Marks == "" {
+		return nil, nil
+	}
+	given, err := marks.Read(p.Marks)
+	if err != nil {
+		return nil, p.fault("marks", "%v", err)
+	}
+	out := make(map[string]bool)
+	for id, mark := range given {
+		if mark == marks.Drop {
+			out[id] = true
+		}
+	}
+	return out, nil
 }
 
 // variation reads the keys that say how takes vary.
@@ -141,11 +163,26 @@ func (p *Plan) limits() (map[string][2]float64, error) {
 // effort is how thoroughly takes are measured.
 type effort int
 
-// Grow and measure measure once; a score measures again in every split.
+// Measure measures to print intervals, grow to make takes, and a score to make
+// takes in every split anew.
 const (
 	thorough effort = iota
+	ready
 	brief
 )
+
+// options returns how much work a measurement does.
+func (e effort) options(seed uint64) variation.Options {
+	o := variation.Default()
+	o.Seed = seed
+	switch e {
+	case ready:
+		o.Pairs, o.Total, o.Draws, o.Weights = 100, 400, 400, 50
+	case brief:
+		o.Pairs, o.Total, o.Draws, o.Weights, o.Workers = 20, 100, 100, 20, 1
+	}
+	return o
+}
 
 // learn returns what a maker is to know of these training takes: their sizes,
 // how they differ, how limbs are coupled, and the gates. Scales counts every
@@ -161,13 +198,8 @@ func (m *making) learn(ctx context.Context, takes []*channels.Take, scales *chan
 		t.Chart.Bones = chart.FindBones(layout, takes)
 	}
 	if t.Measured == nil {
-		o := variation.Default()
-		o.Seed = m.seed
-		if e == brief {
-			o.Pairs, o.Total, o.Draws, o.Weights, o.Workers = 20, 100, 100, 20, 1
-		}
 		var err error
-		if t.Measured, err = variation.Measure(ctx, takes, scales, o); err != nil {
+		if t.Measured, err = variation.Measure(ctx, takes, scales, e.options(m.seed)); err != nil {
 			return t, err
 		}
 	}

@@ -14,7 +14,7 @@ import (
 	"github.com/BurntSushi/toml"
 	"github.com/spf13/pflag"
 
-	"strandwise/augment"
+	"strandwise/augment/variation"
 )
 
 // Plan says what to do. Every field is a key of the plan file and, with dashes
@@ -32,7 +32,7 @@ type Plan struct {
 	Group       []string `toml:"group"`
 	LeaveOut    []string `toml:"leave_out"`
 	LengthUnit  string   `toml:"length_unit"`
-	Stream      string   `toml:"stream"`
+	Signals     string   `toml:"signals"`
 	Cut         string   `toml:"cut"`
 	Annotations string   `toml:"annotations"`
 	HoldOut     string   `toml:"hold_out"`
@@ -44,15 +44,38 @@ type Plan struct {
 	LongestGap  int      `toml:"longest_gap"`
 
 	// How to make takes.
-	Method     string  `toml:"method"`
-	PerTake    int     `toml:"per_take"`
-	Seed       uint64  `toml:"seed"`
-	Knots      int     `toml:"knots"`
-	Spread     float64 `toml:"spread"`
-	TimeShare  float64 `toml:"time_share"`
-	Straighten float64 `toml:"straighten"`
-	Trim       float64 `toml:"trim"`
-	Coupling   float64 `toml:"coupling"`
+	Method       []string `toml:"method"`
+	PerTake      int      `toml:"per_take"`
+	Seed         uint64   `toml:"seed"`
+	Reach        float64  `toml:"reach"`
+	Kind         string   `toml:"kind"`
+	Timing       string   `toml:"timing"`
+	TimingSpread float64  `toml:"timing_spread"`
+	TimingLength float64  `toml:"timing_length"`
+	Knots        int      `toml:"knots"`
+	Spread       float64  `toml:"spread"`
+	TimeShare    float64  `toml:"time_share"`
+	Trim         float64  `toml:"trim"`
+	Duration     float64  `toml:"duration"`
+	Orientation  float64  `toml:"orientation"`
+	Amplitude    float64  `toml:"amplitude"`
+	Gain         float64  `toml:"gain"`
+	ChannelGain  float64  `toml:"channel_gain"`
+	Offset       float64  `toml:"offset"`
+	Shape        float64  `toml:"shape"`
+	ShapeLength  float64  `toml:"shape_length"`
+	Straighten   float64  `toml:"straighten"`
+	Noise        float64  `toml:"noise"`
+	Mix          float64  `toml:"mix"`
+	PathShare    float64  `toml:"path_share"`
+	Coupling     string   `toml:"coupling"`
+	FreeFeet     bool     `toml:"free_feet"`
+	Limit        []string `toml:"limit"`
+	Gate         []string `toml:"gate"`
+	Keep         int      `toml:"keep"`
+	Spare        []string `toml:"spare"`
+	Variation    string   `toml:"variation"`
+	Marks        string   `toml:"marks"`
 
 	// How to score.
 	Protocol      string   `toml:"protocol"`
@@ -77,6 +100,25 @@ type Plan struct {
 	Tables  []string `toml:"tables"`
 	Workers int      `toml:"workers"`
 
+	WindowLength  string `toml:"window_length"`
+	WindowHop     string `toml:"window_hop"`
+	WindowPadding string `toml:"window_padding"`
+	WindowInt16   bool   `toml:"window_int16"`
+	Compression   string `toml:"compression"`
+	RowGroupBytes int64  `toml:"row_group_bytes"`
+	FileBytes     int64  `toml:"file_bytes"`
+	Buckets       int    `toml:"buckets"`
+	HideSubjects  bool   `toml:"hide_subjects"`
+	SubjectSalt   string `toml:"subject_salt"`
+
+	// What its makers say of the set.
+	Title     string `toml:"title"`
+	Creator   string `toml:"creator"`
+	Licence   string `toml:"licence"`
+	URL       string `toml:"url"`
+	Published string `toml:"published"`
+
+	shard *Shard          // to write, nil for the whole set
 	file  string          // the plan file, empty without one
 	text  string          // its content
 	given map[string]bool // keys set by the file or by a flag
@@ -182,6 +224,15 @@ func (p *Plan) read(file string) error {
 	if meta.IsDefined("annotations") {
 		p.Annotations = from(folder, p.Annotations)
 	}
+	if meta.IsDefined("marks") {
+		p.Marks = from(folder, p.Marks)
+	}
+	if meta.IsDefined("variation") {
+		p.Variation = from(folder, p.Variation)
+	}
+	if meta.IsDefined("subject_salt") {
+		p.SubjectSalt = from(folder, p.SubjectSalt)
+	}
 	if meta.IsDefined("out") {
 		p.Out = from(folder, p.Out)
 	}
@@ -207,11 +258,14 @@ func from(folder, path string) string {
 	return filepath.Join(folder, path)
 }
 
-// line returns the line of the plan file on which a key is set.
-func (p *Plan) line(key string) int {
+// line returns the line of the plan file on which a key is set, from 1.
+func (p *Plan) line(key string) int { return 1 + max(p.find(key), 0) }
+
+// find returns the index of the line on which a key is set, or -1.
+func (p *Plan) find(key string) int {
 	last := key[strings.LastIndex(key, ".")+1:]
 	at := regexp.MustCompile(`^\s*\[*\s*"?` + regexp.QuoteMeta(last) + `"?\s*[=.\]]`)
-	return 1 + max(slices.IndexFunc(strings.Split(p.text, "\n"), at.MatchString), 0)
+	return slices.IndexFunc(strings.Split(p.text, "\n"), at.MatchString)
 }
 
 // fault is a usage error about one key, placed where the user set it.
@@ -227,18 +281,22 @@ func (p *Plan) fault(key string, format string, args ...any) error {
 }
 
 // settings returns the plan by key as it was carried out, without what changes
-// no byte of a set.
-func (p *Plan) settings(v augment.Variation) map[string]any {
-	done := *p
-	done.Knots, done.Spread, done.TimeShare, done.Straighten, done.Trim, done.Coupling = v.Knots, v.Spread, v.TimeShare, v.Straighten, v.Trim, v.Coupling
+// no byte of a set. Sizes that were left to measuring are absent.
+func (p *Plan) settings() map[string]any {
 	out := make(map[string]any)
-	fields := reflect.ValueOf(done)
+	fields := reflect.ValueOf(*p)
 	for i := range fields.NumField() {
 		if key, ok := fields.Type().Field(i).Tag.Lookup("toml"); ok {
 			out[key] = fields.Field(i).Interface()
 		}
 	}
+	for _, part := range variation.Parts() {
+		if key := sizeKey(part); !p.given[key] {
+			delete(out, key)
+		}
+	}
 	delete(out, "out")
 	delete(out, "workers")
+	delete(out, "subject_salt") // a secret
 	return out
 }

@@ -37,7 +37,7 @@ func (p *Plan) open(in io.Reader, lenient bool) (*ingest.Recordings, error) {
 	r, err := ingest.Open(ingest.Options{
 		Paths: p.Recordings, Pattern: p.Pattern, Label: p.Label, Columns: p.Columns,
 		Rate: p.Rate, TimeUnit: p.TimeUnit, Units: units, Groups: groups, LeaveOut: p.LeaveOut,
-		LengthUnit: p.LengthUnit, Stream: p.Stream, Repair: repair, Cut: ingest.Cut(p.Cut), Annotations: p.Annotations, Stdin: in,
+		LengthUnit: p.LengthUnit, Signals: p.Signals, Repair: repair, Cut: ingest.Cut(p.Cut), Annotations: p.Annotations, Stdin: in,
 		Lenient: lenient,
 	})
 	return r, p.asUsage(err)

@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"strandwise/augment"
-	"strandwise/channels"
 	"strandwise/classify"
 )
 
@@ -27,7 +26,7 @@ func (p *Plan) Score(ctx context.Context, in io.Reader, progress Progress, notic
 	if err != nil {
 		return nil, err
 	}
-	methods, err := p.methods()
+	making, err := p.making()
 	if err != nil {
 		return nil, err
 	}
@@ -48,7 +47,7 @@ func (p *Plan) Score(ctx context.Context, in io.Reader, progress Progress, notic
 	for _, n := range r.Notices() {
 		notice(n)
 	}
-	return score(ctx, s, methods, o, progress)
+	return score(ctx, s, p.methods(making), o, progress)
 }
 
 // score scores the sample of a survey. What the protocol cannot do with these
@@ -67,34 +66,14 @@ func score(ctx context.Context, s *survey, methods []classify.Method, o classify
 }
 
 // methods returns the plan's way of making takes, and when they are to be
-// compared, all other methods at their published settings.
-func (p *Plan) methods() ([]classify.Method, error) {
-	v, err := p.variation()
-	if err != nil {
-		return nil, err
-	}
-	out := []classify.Method{p.method(strings.Join(p.Method, "+"), v)}
-	for _, m := range augment.Methods() {
-		if p.Compare && !(len(v.Blend) == 1 && v.Blend[0].Method == m) {
-			out = append(out, p.method(string(m), augment.Published(m)))
+// compared, all other methods as published.
+func (p *Plan) methods(m *making) []classify.Method {
+	out := []classify.Method{m.method(strings.Join(p.Method, "+"))}
+	blend := m.variation.Blend
+	for _, name := range augment.Methods() {
+		if p.Compare && name != augment.Mirror && !(len(blend) == 1 && blend[0].Method == name) {
+			out = append(out, m.published(name).method(string(name)))
 		}
 	}
-	return out, nil
-}
-
-// method is a variation under a name. It fits a maker to a set of training
-// takes.
-func (p *Plan) method(name string, v augment.Variation) classify.Method {
-	return classify.Method{Name: name, Fit: func(training []*channels.Take) (classify.Maker, error) {
-		return augment.NewMaker(v, learn(training), p.Seed)
-	}}
-}
-
-// learn returns what a maker is to know of these training takes, all of them.
-func learn(takes []*channels.Take) augment.Training {
-	t := augment.Training{Scales: new(channels.Scales), Takes: takes}
-	for _, take := range takes {
-		t.Scales.Add(take)
-	}
-	return t
+	return out
 }

@@ -16,16 +16,23 @@ type survey struct {
 	trains      int // takes that train
 	trainFrames int // in them
 	frames      int
+	counts      map[countKey]int // takes
 	scales      channels.Scales  // of the training takes
 	sample      *classify.Sample // to score on
 	rest        *classify.Sample // of takes that are no gesture
+}
+
+// countKey is what takes are counted by.
+type countKey struct {
+	label, subject string
+	split          channels.Split
 }
 
 // look reads all recordings once, which also shows whether they are sound
 // before anything is written. At most so many takes of each label and split are
 // held to score on; noGesture lists the labels of takes that are no gesture.
 func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noGesture []string) (*survey, error) {
-	s := &survey{sample: classify.NewSample(most, seed), rest: classify.NewSample(most, seed)}
+	s := &survey{counts: make(map[countKey]int), sample: classify.NewSample(most, seed), rest: classify.NewSample(most, seed)}
 	for t, err := range takes {
 		if err == nil {
 			err = ctx.Err()
@@ -35,6 +42,7 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noG
 		}
 		s.layout = t.Layout
 		s.takes++
+		s.counts[countKey{t.Label, t.Subject, t.Split}]++
 		s.frames += t.Frames()
 		if t.Split != channels.Test {
 			s.trains++
