@@ -71,8 +71,11 @@ func readPart(t testing.TB, path string, out *rows) {
 	for c := range int(table.NumCols()) {
 		field := table.Schema().Field(c)
 		kind := field.Type.String()
-		if list, ok := field.Type.(*arrow.ListType); ok {
-			kind = fmt.Sprintf("list<%s>", list.Elem()) // arrow/go gives elements names of its own
+		switch list := field.Type.(type) { // arrow/go gives elements names of its own
+		case *arrow.ListType:
+			kind = fmt.Sprintf("list<%s>", list.Elem())
+		case *arrow.FixedSizeListType:
+			kind = fmt.Sprintf("list<%s>[%d]", list.Elem(), list.Len())
 		}
 		out.fields = append(out.fields, field.Name+": "+kind)
 		row := from
@@ -99,9 +102,24 @@ func value(column arrow.Array, i int) any {
 		return a.Value(i)
 	case *array.Float32:
 		return a.Value(i)
-	case *array.List:
+	case array.ListLike:
 		from, to := a.ValueOffsets(i)
-		return slices.Clone(a.ListValues().(*array.Float32).Float32Values()[from:to])
+		switch values := a.ListValues().(type) {
+		case *array.Float32:
+			return slices.Clone(values.Float32Values()[from:to])
+		case *array.Int16:
+			return slices.Clone(values.Int16Values()[from:to])
+		}
 	}
 	panic(fmt.Sprintf("arrow made a %T", column))
+}
+
+// firstPart returns the path of a table's first file.
+func firstPart(t testing.TB, dir string, table export.Table, split string) string {
+	t.Helper()
+	parts, err := filepath.Glob(filepath.Join(dir, string(table), "split="+split, "*.parquet"))
+	if err != nil || len(parts) == 0 {
+		t.Fatalf("no files of table %s: %v", table, err)
+	}
+	return slices.Min(parts)
 }

@@ -1,75 +1,158 @@
 package export
 
 import (
-	"bytes"
-	"encoding/json"
 	"errors"
 	"fmt"
 	"io/fs"
+	"maps"
 	"os"
 	"path/filepath"
 	"slices"
 	"strings"
 )
 
-const (
-	manifestName = "manifest.json"
-	markerName   = "unfinished.jsonl"
-	markerHeader = `{"format":"strandwise.unfinished/1"}` + "\n"
-)
-
-// attached is one line of the marker, written before the attachment itself.
-type attached struct {
-	Attached string `json:"attached"`
-}
-
-// begin makes the folder ready: it exists, is ours alone, and holds nothing
-// but the marker. What it makes is recorded in w for Discard.
+// begin makes the folder ready: it exists, holds nothing but our set, is ours
+// alone unless we write one shard of several, and says what the set is to be.
 func (w *Writer) begin() error {
 	if err := w.makeFolders(w.dir); err != nil {
 		return err
 	}
-	if _, err := leftovers(w.dir); err != nil {
+	if _, err := w.leftovers(); err != nil {
 		return err
 	}
-	path := filepath.Join(w.dir, markerName)
-	_, missing := os.Lstat(path)
-	var err error
-	if w.marker, err = w.disk.claim(path); err != nil {
+	if err := w.makeFolders(w.path(stateFolder)); err != nil {
 		return err
 	}
-	if missing != nil {
-		w.made = append(w.made, path)
-	}
-	// Another process may have sealed its set before the marker was ours, so
-	// only what is found now may be removed.
-	left, err := leftovers(w.dir)
+	_, missing := os.Lstat(w.path(lockName))
+	lock, err := w.disk.claim(w.path(lockName), !w.sharded())
 	if err != nil {
 		return err
 	}
-	for _, path := range left {
-		if err := w.disk.remove(path); err != nil {
-			return fmt.Errorf("clean unfinished set: %w", err)
-		}
-	}
-	if missing == nil {
-		w.made = append(w.made, path) // until now an old marker vouches for what is left
-	}
-	if err := w.marker.Truncate(0); err != nil {
+	w.lock, w.locked = lock, missing != nil
+	// Another process may have sealed its set before the lock was ours, so only
+	// what is found now may be removed.
+	left, err := w.leftovers()
+	if err != nil {
 		return err
 	}
-	return w.note([]byte(markerHeader))
+	if err := w.agree(); err != nil {
+		return err
+	}
+	if w.sharded() {
+		return nil // others may be writing what looks unfinished
+	}
+	return w.clean(left, false)
 }
 
-// note appends to the marker and makes it last.
-func (w *Writer) note(line []byte) error {
-	if _, err := w.marker.Write(line); err != nil {
+// agree records what the set is to be, or holds it against what an unfinished
+// set was to be.
+func (w *Writer) agree() error {
+	mine := planned{Format: planFormat, Options: w.options, Layout: describeLayout(w.layout)}
+	there, err := w.plan()
+	if err != nil {
 		return err
 	}
-	if err := w.marker.Sync(); err != nil {
+	if there == nil {
+		w.fresh = true
+		if there, err = w.declare(&mine); there == nil || err != nil {
+			return err
+		}
+	}
+	differ, err := mine.differences(there)
+	if err == nil && len(differ) > 0 {
+		err = fmt.Errorf("%s holds an unfinished set of another plan: %s; carry on with that plan, remove the folder, or choose another one", w.dir, listed(differ, "; "))
+	}
+	return err
+}
+
+// declare writes the plan, unless another process was faster: then that one's
+// is returned.
+func (w *Writer) declare(mine *planned) (*planned, error) {
+	data, err := marshal(mine, "")
+	if err != nil {
+		return nil, err
+	}
+	t, err := filled(w.disk, w.path(planName), append(data, '\n'))
+	if err != nil {
+		return nil, err
+	}
+	if err := t.publish(); errors.Is(err, fs.ErrExist) {
+		return w.plan()
+	} else if err != nil {
+		return nil, err
+	}
+	return nil, w.disk.syncDir(w.dir)
+}
+
+// clean removes what an unfinished set left, but for its finished buckets and,
+// when they are wanted, attachments. It needs the lock, alone.
+func (s state) clean(left []leftover, attached bool) error {
+	keep, err := s.recorded(attached)
+	if err != nil {
+		return fmt.Errorf("clean unfinished set: %w", err)
+	}
+	left = slices.DeleteFunc(slices.Clone(left), func(l leftover) bool { return l.folder || keep[l.name] })
+	if err := s.drop(left); err != nil {
+		return fmt.Errorf("clean unfinished set: %w", err)
+	}
+	return nil
+}
+
+// drop removes files and folders, and the records that vouch for them only
+// when all those are gone.
+func (s state) drop(left []leftover) error {
+	var errs []error
+	for _, vouching := range []bool{false, true} {
+		for _, l := range left {
+			if strings.HasPrefix(l.name, stateFolder+"/") == vouching {
+				errs = append(errs, s.remove(l.name))
+			}
+		}
+		if err := errors.Join(errs...); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// remove removes a file or an empty folder, if it is there.
+func (s state) remove(name string) error {
+	if err := s.disk.remove(s.path(name)); !errors.Is(err, fs.ErrNotExist) {
 		return err
 	}
-	return w.disk.syncDir(w.dir)
+	return nil
+}
+
+// recorded lists the files of finished buckets and their records and, when they
+// are wanted, those of attachments and notes, by name.
+func (s state) recorded(attached bool) (map[string]bool, error) {
+	keep := map[string]bool{}
+	p, err := s.plan()
+	if err != nil || p == nil {
+		return keep, err
+	}
+	for number := range p.Buckets {
+		b, err := s.bucket(number)
+		if err != nil {
+			return nil, err
+		}
+		if b == nil {
+			continue
+		}
+		keep[bucketRecord(number)] = true
+		for _, f := range b.Files {
+			keep[f.Path] = true
+		}
+	}
+	if !attached {
+		return keep, nil
+	}
+	keep[notesName] = true
+	files, err := s.attachments()
+	for _, f := range files {
+		keep[f.Path], keep[attachmentRecord(f.Path)] = true, true
+	}
+	return keep, err
 }
 
 // isFolder reports whether the folder exists. A file of its name is an error.
@@ -99,30 +182,56 @@ func (w *Writer) makeFolders(dir string) error {
 }
 
 func (w *Writer) makeFolder(dir string) error {
-	if err := w.disk.mkdir(dir); err != nil {
+	if err := w.disk.mkdir(dir); errors.Is(err, fs.ErrExist) {
+		return nil // another bucket, or another process, was faster
+	} else if err != nil {
 		return err
 	}
+	w.mu.Lock()
 	w.made = append(w.made, dir)
+	w.mu.Unlock()
 	return w.disk.syncDir(filepath.Dir(dir))
 }
 
-// leftovers lists what an unfinished set left in the folder, the marker apart,
-// files before the folders that hold them. Anything else in the folder is an
-// error that names it.
-func leftovers(dir string) ([]string, error) {
-	if _, err := os.Lstat(filepath.Join(dir, manifestName)); err == nil {
-		return nil, fmt.Errorf("%s already holds a set; choose another folder or remove it", dir)
+// leftover is a file or folder of an unfinished set, the lock and the plan
+// apart.
+type leftover struct {
+	name    string // inside the set, with slashes
+	folder  bool
+	partial bool // under its temporary name
+}
+
+// leftovers lists what an unfinished set left in the folder, files before the
+// folders that hold them. Anything else in the folder is an error that names it.
+func (s state) leftovers() ([]leftover, error) {
+	if _, err := os.Lstat(s.path(manifestName)); err == nil {
+		return nil, fmt.Errorf("%s already holds a set; choose another folder or remove it", s.dir)
 	}
-	attachments, unfinished, err := readMarker(filepath.Join(dir, markerName))
-	if err != nil {
-		return nil, err
+	o, err := s.owner()
+	for err == nil {
+		var ours []leftover
+		var foreign []string
+		ours, foreign, err = s.sort(o)
+		if len(foreign) == 0 || err != nil {
+			return ours, err
+		}
+		before := o
+		if o, err = s.owner(); err == nil && maps.Equal(o.attached, before.attached) && o.planned == before.planned {
+			err = fmt.Errorf("%s is not empty: it holds %s; choose an empty folder", s.dir, listed(foreign, ", "))
+		} // else another shard has said meanwhile what is its own
 	}
-	var ours, foreign []string
-	err = walk(dir, func(path, name string, folder bool) error {
+	return nil, err
+}
+
+// sort tells what the owner made, files before the folders that hold them, from
+// what somebody else did.
+func (s state) sort(o owner) (ours []leftover, foreign []string, err error) {
+	err = walk(s.dir, func(_, name string, folder bool) error {
 		switch {
-		case unfinished && name == markerName:
-		case unfinished && belongs(name, folder, attachments):
-			ours = append(ours, path)
+		case name == lockName || name == planName || name == stateFolder && folder:
+		case o.owns(name, folder):
+			_, partly := final(name)
+			ours = append(ours, leftover{name, folder, partly})
 		default:
 			foreign = append(foreign, name)
 			if folder {
@@ -131,20 +240,32 @@ func leftovers(dir string) ([]string, error) {
 		}
 		return nil
 	})
-	if err != nil {
-		return nil, err
-	}
-	if len(foreign) > 0 {
-		return nil, fmt.Errorf("%s is not empty: it holds %s; choose an empty folder", dir, list(foreign))
-	}
 	slices.Reverse(ours) // the walk names a folder before what it holds
-	return ours, nil
+	return ours, foreign, err
+}
+
+// owner reads what of the folder's content is the unfinished set's.
+func (s state) owner() (owner, error) {
+	o := owner{attached: map[string]bool{}}
+	p, err := s.plan()
+	if err != nil {
+		return o, err
+	}
+	o.planned = p != nil
+	attached, err := s.attachments()
+	for _, f := range attached {
+		o.attached[f.Path] = true
+	}
+	return o, err
 }
 
 // walk visits what a folder holds, in the order of the names, with each path
 // and its name inside the folder, with slashes.
 func walk(dir string, visit func(path, name string, folder bool) error) error {
 	return fs.WalkDir(os.DirFS(dir), ".", func(name string, e fs.DirEntry, err error) error {
+		if errors.Is(err, fs.ErrNotExist) && name != "." {
+			return nil // another process put it in place or removed it
+		}
 		if err != nil || name == "." {
 			return err
 		}
@@ -152,62 +273,11 @@ func walk(dir string, visit func(path, name string, folder bool) error) error {
 	})
 }
 
-// belongs reports whether a path inside a folder, with slashes, is one that a
-// writer makes: a table's folders and parts, the manifest's temporary name, or
-// an attachment its marker names.
-func belongs(name string, folder bool, attachments map[string]bool) bool {
-	parts := strings.Split(name, "/")
-	if len(parts) > 1 || folder {
-		return belongsToTable(parts, folder)
-	}
-	name = strings.TrimSuffix(name, partial)
-	return name == manifestName || attachments[name]
-}
-
-func belongsToTable(parts []string, folder bool) bool {
-	if !slices.Contains(AllTables(), Table(parts[0])) || len(parts) > 3 || folder != (len(parts) < 3) {
-		return false
-	}
-	if len(parts) > 1 && !slices.Contains([]string{"split=train", "split=test"}, parts[1]) {
-		return false
-	}
-	if len(parts) < 3 {
-		return true
-	}
-	matched, err := filepath.Match("part-[0-9]*.parquet", strings.TrimSuffix(parts[2], partial))
-	return err == nil && matched
-}
-
-// readMarker returns the attachments that the marker of an unfinished set
-// names, and whether there is a marker. One cut short by a crash still is; a
-// file of that name that says something else is an error.
-func readMarker(path string) (attachments map[string]bool, found bool, err error) {
-	data, err := os.ReadFile(path)
-	if errors.Is(err, fs.ErrNotExist) {
-		return nil, false, nil
-	}
-	if err != nil {
-		return nil, false, err
-	}
-	lines, whole := bytes.CutPrefix(data, []byte(markerHeader))
-	if !whole && !strings.HasPrefix(markerHeader, string(data)) {
-		return nil, false, fmt.Errorf("%s was not written by this program; choose another folder", path)
-	}
-	attachments = map[string]bool{}
-	for line := range bytes.Lines(lines) {
-		var a attached
-		if json.Unmarshal(line, &a) == nil {
-			attachments[a.Attached] = true
-		}
-	}
-	return attachments, true, nil
-}
-
-// list joins a few names for a message.
-func list(names []string) string {
+// listed joins a few names for a message.
+func listed(names []string, by string) string {
 	const most = 5
 	if more := len(names) - most; more > 0 {
-		return fmt.Sprintf("%s and %d more", strings.Join(names[:most], ", "), more)
+		return fmt.Sprintf("%s and %d more", strings.Join(names[:most], by), more)
 	}
-	return strings.Join(names, ", ")
+	return strings.Join(names, by)
 }

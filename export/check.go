@@ -15,8 +15,8 @@ import (
 const maxFrames = 1 << 27
 
 // check reports why a take cannot stand in the set.
-func (w *Writer) check(t *channels.Take) error {
-	if err := w.checkLayout(t); err != nil {
+func (b *Bucket) check(t *channels.Take) error {
+	if err := b.checkLayout(t); err != nil {
 		return fmt.Errorf("take %s: %w", t.ID, err)
 	}
 	for _, f := range []func(*channels.Take) error{checkTexts, checkMaking, checkClock, checkValues} {
@@ -24,15 +24,18 @@ func (w *Writer) check(t *channels.Take) error {
 			return fmt.Errorf("take %s: %w", t.ID, err)
 		}
 	}
+	if at := BucketOf(sourceOf(t), b.set.options.Buckets); at != b.number {
+		return fmt.Errorf("take %s: it belongs to bucket %d, not %d", t.ID, at, b.number)
+	}
 	return nil
 }
 
-func (w *Writer) checkLayout(t *channels.Take) error {
-	if t.Layout != w.accepts {
-		if t.Layout == nil || !slices.Equal(t.Layout.Channels, w.layout.Channels) {
+func (b *Bucket) checkLayout(t *channels.Take) error {
+	if t.Layout != b.accepts {
+		if t.Layout == nil || !slices.Equal(t.Layout.Channels, b.set.layout.Channels) {
 			return errors.New("its channels are not those of the set")
 		}
-		w.accepts = t.Layout
+		b.accepts = t.Layout
 	}
 	if n := t.Frames(); n == 0 || n > maxFrames || len(t.Data) != n*t.Width() {
 		return fmt.Errorf("it has %d values for %d frames of %d channels; a take in a set has 1 to %d frames", len(t.Data), n, t.Width(), maxFrames)
@@ -127,7 +130,7 @@ func checkNames(l *channels.Layout) error {
 // "_channel" where a table has a column of that name already, or the split's
 // folders would. The same column is used in every table.
 func columnName(channel string) string {
-	for _, c := range append(fixedTakeColumns(), fixedFrameColumns()...) {
+	for _, c := range slices.Concat(fixedTakeColumns(), fixedFrameColumns(), fixedWindowColumns()) {
 		if strings.EqualFold(c.Name, channel) {
 			return channel + "_channel"
 		}

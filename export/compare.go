@@ -51,6 +51,7 @@ func (c *content) compareCounts(v *Verification) {
 				found.Split, found.Label, found.Origin, says.Takes, says.Frames, found.Takes, found.Frames)
 		}
 	}
+	c.compareWindows(v)
 	for _, split := range []channels.Split{channels.Train, channels.Test} {
 		rows, frames := c.rows[tableKey{Frames, split}], c.frames(split)
 		if c.hasFrames() && rows != frames {

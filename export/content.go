@@ -6,6 +6,7 @@ import (
 	"hash/maphash"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 
 	"github.com/parquet-go/parquet-go"
@@ -24,6 +25,7 @@ type content struct {
 	recorded map[uint64]bool   // hashes of the recorded ids in the split train
 	sources  map[uint64]source // the sources asked for
 	rows     map[tableKey]int64
+	windows  windowContent
 	partial  bool // a file could not be read, so what is missing proves nothing
 }
 
@@ -59,16 +61,38 @@ func (c *content) takeFile(v *Verification, f File) error {
 			return err
 		}
 		c.rows[key] += f.Rows
-		if key.table == Frames {
-			return nil
+		switch key.table {
+		case Frames:
+			return c.checkColumns(p, Frames)
+		case Windows:
+			return errors.Join(c.windows.file(p), c.checkColumns(p, Windows))
 		}
 		for _, g := range p.RowGroups() {
 			if err := c.takeGroup(v, f.Path, key.split, g); err != nil {
 				return err
 			}
 		}
-		return nil
+		return c.checkColumns(p, key.table)
 	})
+}
+
+// checkColumns holds the columns of a file against those of its table and the
+// channels of the manifest.
+func (c *content) checkColumns(p *parquet.File, t Table) error {
+	var want, got []string
+	for _, column := range ownColumns(t) {
+		want = append(want, column.Name)
+	}
+	for _, channel := range c.manifest.Layout.Channels {
+		want = append(want, channel.Column)
+	}
+	for _, field := range p.Schema().Fields() {
+		got = append(got, field.Name())
+	}
+	if !slices.Equal(want, got) {
+		return fmt.Errorf("its columns are %s, not %s", strings.Join(got, ", "), strings.Join(want, ", "))
+	}
+	return nil
 }
 
 // placeOf returns the table and split that a path stands for.
@@ -132,6 +156,7 @@ func (c *content) takeGroup(v *Verification, path string, split channels.Split, 
 	for i := range frames {
 		id, label, origin := texts[0][i].String(), texts[1][i].String(), channels.Origin(texts[2][i].String())
 		c.counts.add(split, label, origin, 1, int64(frames[i].Int32()))
+		c.windows.take(split, int(frames[i].Int32()))
 		c.takeRow(v, path, split, id, origin, texts[3][i])
 	}
 	v.Takes += int64(len(frames))

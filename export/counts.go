@@ -34,6 +34,16 @@ func (c counts) add(split channels.Split, label string, origin channels.Origin, 
 	c[key].Frames += frames
 }
 
+// distinct lists what the counts say of one thing, sorted, each once.
+func (m *Manifest) distinct(of func(Count) string) []string {
+	var out []string
+	for _, c := range m.Counts {
+		out = append(out, of(c))
+	}
+	slices.Sort(out)
+	return slices.Compact(out)
+}
+
 // list returns the counts in the order of split, label and origin.
 func (c counts) list() []Count {
 	out := make([]Count, 0, len(c))

@@ -41,7 +41,8 @@ func Example() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	fmt.Println(m.Files[0].Path, "holds", m.Files[0].Rows, "takes")
+	table := m.Files[len(m.Files)-1] // after CARD.md and croissant.json
+	fmt.Println(table.Path, "holds", table.Rows, "takes")
 
 	v, err := export.Verify(dir)
 	if err != nil {

@@ -43,6 +43,7 @@ type Disk struct {
 	FailAt int   // the step that fails, from 1; 0 for none
 	Err    error // what it fails with
 	Crash  bool  // every later step fails too, as after the process has died
+	Writes []int // the steps that wrote to a file
 
 	open []file
 }
@@ -86,7 +87,16 @@ func (d *Disk) remove(path string) error {
 func (d *Disk) syncDir(string) error { return d.step() }
 
 func (d *Disk) create(path string) (file, error) { return d.keep(osDisk{}.create, path) }
-func (d *Disk) claim(path string) (file, error)  { return d.keep(osDisk{}.claim, path) }
+func (d *Disk) claim(path string, alone bool) (file, error) {
+	return d.keep(func(path string) (file, error) { return osDisk{}.claim(path, alone) }, path)
+}
+
+func (d *Disk) publish(from, to string) error {
+	if err := d.step(); err != nil {
+		return err
+	}
+	return osDisk{}.publish(from, to)
+}
 
 func (d *Disk) keep(open func(string) (file, error), path string) (file, error) {
 	if err := d.step(); err != nil {
@@ -107,6 +117,7 @@ type diskFile struct {
 }
 
 func (f diskFile) Write(p []byte) (int, error) {
+	f.disk.Writes = append(f.disk.Writes, f.disk.Steps+1)
 	if err := f.disk.step(); err != nil {
 		n, _ := f.file.Write(p[:len(p)/2]) // a full disk takes part of it
 		return n, err
@@ -115,13 +126,6 @@ func (f diskFile) Write(p []byte) (int, error) {
 }
 
 func (f diskFile) Sync() error { return f.disk.step() }
-
-func (f diskFile) Truncate(size int64) error {
-	if err := f.disk.step(); err != nil {
-		return err
-	}
-	return f.file.Truncate(size)
-}
 
 func (f diskFile) Close() error {
 	failed := f.disk.step()

@@ -125,10 +125,17 @@ func fill(w *export.Writer, takes []*channels.Take) (*export.Manifest, error) {
 // both asks for both tables in small row groups and files.
 func both() export.Options {
 	return export.Options{
-		Tables: export.AllTables(), RowGroupBytes: 4 << 10, FileBytes: 20 << 10,
+		Tables: []export.Table{export.Takes, export.Frames}, RowGroupBytes: 4 << 10, FileBytes: 10 << 10,
 		Version: "0.1.0", Seed: 42, Plan: []byte(`{"reach": 1, "labels": ["curtain", "spotlight"]}`),
 		Recordings: []export.Recording{{Path: "recordings/ada.csv", Bytes: 1200, SHA256: "00ff"}},
 	}
+}
+
+// bucketed is both in three buckets.
+func bucketed() export.Options {
+	o := both()
+	o.Buckets = 3
+	return o
 }
 
 // sha returns the SHA-256 of a text in hexadecimal.

@@ -16,23 +16,28 @@ import (
 	"strandwise/channels"
 )
 
-// manifestFormat names the form of the manifest.
-const manifestFormat = "strandwise.set/1"
+const (
+	manifestName   = "manifest.json"
+	manifestFormat = "strandwise.set/1" // the form of the manifest
+)
 
 // Manifest says what a set holds and how it came about. It is an indented JSON
 // file; the fields stand in this order, so the same set has the same bytes.
 type Manifest struct {
-	Format         string          `json:"format"` // "strandwise.set/1"
-	ProgramVersion string          `json:"program_version"`
-	Seed           uint64          `json:"seed,string"` // a JSON string: readers lose digits of numbers above 2^53
-	Plan           json.RawMessage `json:"plan"`
-	Recordings     []Recording     `json:"recordings"`
-	Repairs        json.RawMessage `json:"repairs"` // counts of what was repaired in them; null when nothing was looked for
-	Cautions       []string        `json:"cautions"`
-	Notices        []string        `json:"notices"` // what this run has to say about itself
-	Layout         Layout          `json:"layout"`
-	Counts         []Count         `json:"counts"`
-	Files          []File          `json:"files"` // by path
+	Format         string           `json:"format"` // "strandwise.set/1"
+	ProgramVersion string           `json:"program_version"`
+	About          About            `json:"about"`
+	Seed           uint64           `json:"seed,string"` // a JSON string: readers lose digits of numbers above 2^53
+	Plan           json.RawMessage  `json:"plan"`
+	Recordings     []Recording      `json:"recordings"`
+	Repairs        json.RawMessage  `json:"repairs"` // counts of what was repaired in them; null when nothing was looked for
+	Cautions       []string         `json:"cautions"`
+	Notices        []string         `json:"notices"` // what this run has to say about itself
+	Layout         Layout           `json:"layout"`
+	Counts         []Count          `json:"counts"`
+	Tallies        map[string]int64 `json:"tallies"` // what was counted while takes were made; see [Bucket.Tally]
+	Buckets        int              `json:"buckets"` // into which the takes are divided by their source; see [BucketOf]
+	Files          []File           `json:"files"`   // by path
 
 	// Seal is the SHA-256 of the manifest's own bytes, in hexadecimal, with
 	// the 64 digits of the seal itself written as zeros.
@@ -69,21 +74,30 @@ func (m *Manifest) Takes(origin channels.Origin) int64 {
 	return n
 }
 
-func (w *Writer) manifest(notices []string) *Manifest {
-	slices.SortFunc(w.files, func(a, b File) int { return cmp.Compare(a.Path, b.Path) })
-	return &Manifest{
+// manifest returns the manifest of a set of this plan, without its seal.
+func (p *planned) manifest(files []File, counts []Count, tallies map[string]int64, notices []string) *Manifest {
+	m := &Manifest{
 		Format:         manifestFormat,
-		ProgramVersion: w.options.Version,
-		Seed:           w.options.Seed,
-		Plan:           w.options.Plan,
-		Recordings:     append([]Recording{}, w.options.Recordings...),
-		Repairs:        w.options.Repairs,
+		ProgramVersion: p.Version,
+		About:          p.About,
+		Seed:           p.Seed,
+		Plan:           p.Plan,
+		Recordings:     append([]Recording{}, p.Recordings...),
+		Repairs:        p.Repairs,
 		Cautions:       Cautions(),
-		Notices:        append([]string{}, notices...),
-		Layout:         describeLayout(w.layout),
-		Counts:         w.counts.list(),
-		Files:          w.files,
+		Notices:        notices,
+		Layout:         p.Layout,
+		Counts:         counts,
+		Tallies:        tallies,
+		Buckets:        p.Buckets,
+		Files:          files,
 	}
+	m.sortFiles()
+	return m
+}
+
+func (m *Manifest) sortFiles() {
+	slices.SortFunc(m.Files, func(a, b File) int { return cmp.Compare(a.Path, b.Path) })
 }
 
 // describe returns the entry of an attachment.

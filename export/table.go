@@ -13,9 +13,15 @@ import (
 	"strandwise/export/pages"
 )
 
-// table is one table of one split while it is written: a row of part files.
+type tableKey struct {
+	table Table
+	split channels.Split
+}
+
+// table is one table of one split of one bucket while it is written: a row of part files.
 type table struct {
 	set     *Writer
+	bucket  *Bucket
 	kind    Table
 	folder  string // inside the set, with slashes
 	columns []pages.Column
@@ -27,28 +33,48 @@ type table struct {
 // part is one Parquet file being written.
 type part struct {
 	name   string // inside the set, with slashes
-	file   file
+	file   *temporary
 	pages  *pages.Writer
 	whole  hash.Hash   // of the file so far
 	group  hash.Hash32 // of the row group in the making
 	groups []RowGroup
 	floats int64 // bytes of raw floats in the row group in the making
 	facts  TakeFacts
+
+	saturated []int64 // values per channel, table windows only
 }
 
-func newTable(w *Writer, kind Table, split channels.Split) *table {
+func newTable(b *Bucket, kind Table, split channels.Split) *table {
+	w := b.set
 	takes := NewTakeRows(w.layout, false)
 	columns := takes.Columns()
-	if kind == Frames {
+	switch kind {
+	case Frames:
 		columns = frameColumns(w.layout)
+	case Windows:
+		columns = windowColumns(w.layout, w.options.Windowing)
 	}
-	return &table{set: w, kind: kind, columns: columns, takes: takes, folder: fmt.Sprintf("%s/split=%s", kind, split)}
+	return &table{set: w, bucket: b, kind: kind, columns: columns, takes: takes, folder: fmt.Sprintf("%s/split=%s", kind, split)}
+}
+
+// ownColumns returns the columns of a table before those of the channels.
+func ownColumns(kind Table) []pages.Column {
+	switch kind {
+	case Frames:
+		return fixedFrameColumns()
+	case Windows:
+		return fixedWindowColumns()
+	}
+	return fixedTakeColumns()
 }
 
 // add writes the rows of one take.
 func (t *table) add(take *channels.Take) error {
-	if t.kind == Frames {
+	switch t.kind {
+	case Frames:
 		return t.addFrames(take)
+	case Windows:
+		return t.addWindows(take)
 	}
 	return t.addTake(take)
 }
@@ -63,19 +89,28 @@ func (t *table) begin() error {
 		return err
 	}
 	p := &part{
-		name:  fmt.Sprintf("%s/part-%05d.parquet", t.folder, t.parts),
+		name:  t.partName(),
 		whole: sha256.New(),
 		group: crc32.NewIEEE(),
 	}
 	var err error
-	if p.file, err = t.set.createFile(filepath.Join(t.set.dir, filepath.FromSlash(p.name))); err != nil {
+	if p.file, err = createTemporary(t.set.disk, t.set.path(p.name)); err != nil {
 		return err
 	}
 	t.part = p
 	t.parts++
-	p.pages, err = pages.NewWriter(io.MultiWriter(p.file, p.whole, p.group), t.columns)
+	p.pages, err = pages.NewCompressedWriter(io.MultiWriter(p.file, p.whole, p.group), t.columns, t.set.options.Compression)
 	p.group.Reset() // the file's first bytes belong to no row group
 	return err
+}
+
+// partName names the next part: after the bucket, and from the bucket's second
+// part on by a number too.
+func (t *table) partName() string {
+	if t.parts == 0 {
+		return fmt.Sprintf("%s/part-%05d.parquet", t.folder, t.bucket.number)
+	}
+	return fmt.Sprintf("%s/part-%05d_%05d.parquet", t.folder, t.bucket.number, t.parts+1)
 }
 
 // endRows ends rows that hold this many bytes of floats, and the row group and
@@ -91,7 +126,7 @@ func (t *table) endRows(rows int, floats int64) error {
 	if err := p.endGroup(); err != nil {
 		return err
 	}
-	if p.pages.Offset() < t.set.options.FileBytes {
+	if p.pages.Offset() < 2*t.set.options.FileBytes {
 		return nil
 	}
 	return t.end()
@@ -117,7 +152,7 @@ func (t *table) end() error {
 	if err := p.endGroup(); err != nil {
 		return err
 	}
-	metadata, err := p.facts.metadata(t.set.layout, t.kind, t.set.options.Version)
+	metadata, err := t.metadata()
 	if err != nil {
 		return err
 	}
@@ -125,23 +160,44 @@ func (t *table) end() error {
 		return err
 	}
 	t.part = nil // place closes the file, whatever comes
-	if err := place(t.set.disk, p.file, filepath.Join(t.set.dir, filepath.FromSlash(p.name))); err != nil {
+	if err := p.file.place(); err != nil {
 		return err
 	}
 	f := File{Path: p.name, Bytes: p.pages.Offset(), SHA256: hexSum(p.whole), RowGroups: p.groups}
 	for _, g := range p.groups {
 		f.Rows += g.Rows
 	}
-	t.set.files = append(t.set.files, f)
+	t.bucket.files = append(t.bucket.files, f)
 	return nil
 }
 
-// abandon closes the part being written; Discard removes it.
-func (t *table) abandon() {
-	if t.part != nil {
-		t.part.file.Close()
-		t.part = nil
+// metadata returns what the part being written says of itself.
+func (t *table) metadata() ([]pages.KeyValue, error) {
+	o := t.set.options
+	out, err := t.part.facts.metadata(t.set.layout, t.kind, o.Version)
+	if err != nil {
+		return nil, err
 	}
+	run, err := o.Run().metadata()
+	if err != nil {
+		return nil, err
+	}
+	out = append(out, run)
+	if t.kind == Windows {
+		more, err := o.Windowing.metadata(t.set.layout, t.part.saturated)
+		return append(out, more...), err
+	}
+	return out, nil
+}
+
+// abandon removes the part being written.
+func (t *table) abandon() error {
+	if t.part == nil {
+		return nil
+	}
+	f := t.part.file
+	t.part = nil
+	return f.abandon()
 }
 
 func hexSum(h hash.Hash) string { return hex.EncodeToString(h.Sum(nil)) }

@@ -10,6 +10,9 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+
+	"strandwise/channels"
+	"strandwise/export/marks"
 )
 
 // Problem is one way in which a set is not what its manifest says.
@@ -33,6 +36,12 @@ type Verification struct {
 	Bytes    int64     `json:"bytes"` // in them
 	Takes    int64     `json:"takes"` // rows of the table takes whose content was checked
 	Problems []Problem `json:"problems"`
+
+	// Copies are takes for testing that are nearly the same as one that trains,
+	// looked for when there is no other problem. Those of synthetic takes stand
+	// among the problems too; those of recorded ones do not, because some
+	// recordings are so and the set says truly what they are.
+	Copies []Copy `json:"copies"`
 }
 
 // Sound reports whether nothing was found.
@@ -48,17 +57,19 @@ func (v *Verification) Sound() bool { return len(v.Problems) == 0 }
 //   - rows in the Parquet files' footers, and takes per split, label and
 //     origin, against the manifest;
 //   - the takes: no id twice, no synthetic take outside the split train, and
-//     every source a recorded take in that split.
+//     every source a recorded take in that split;
+//   - the columns of every table;
+//   - near-copies across the split; see [NearCopy].
 //
 // Files are read in blocks. Ids are compared by 64-bit hashes, 8 bytes held
 // per take: a wrong source that has the hash of a right one is not noticed
 // (1 in 2^64 per pair); ids reported as double were compared as texts.
 //
-// A leftover marker beside a manifest, from a crash in the last step of
-// sealing, is no problem: the set is whole. The error is for a folder that
-// holds no finished set or cannot be read.
+// What is left of an unfinished set's own folder beside a manifest, from a crash
+// in the last step of sealing, is no problem: the set is whole. The error is for
+// a folder that holds no finished set or cannot be read.
 func Verify(dir string) (*Verification, error) {
-	v := &Verification{Problems: []Problem{}}
+	v := &Verification{Problems: []Problem{}, Copies: []Copy{}}
 	m, err := ReadManifest(dir)
 	if errors.Is(err, ErrSeal) {
 		v.problem(manifestName, "%v", ErrSeal)
@@ -78,7 +89,22 @@ func Verify(dir string) (*Verification, error) {
 		}
 	}
 	content.compare(v)
+	if v.Sound() {
+		v.checkCopies(content)
+	}
 	return v, nil
+}
+
+// checkCopies looks for near-copies across the split.
+func (v *Verification) checkCopies(c *content) {
+	if err := c.findCopies(v); err != nil {
+		v.problem(string(Takes), "cannot be searched for near-copies: %v", err)
+	}
+	for _, found := range v.Copies {
+		if found.Origin == channels.Synthetic {
+			v.problem(string(Takes), "synthetic take %s, which trains, is nearly the same as take %s, which is for testing (difference %.2g of its movement)", found.Train, found.Test, found.Difference)
+		}
+	}
 }
 
 func (v *Verification) problem(file, format string, args ...any) {
@@ -87,12 +113,12 @@ func (v *Verification) problem(file, format string, args ...any) {
 
 // checkNames reports files that the manifest does not name.
 func (v *Verification) checkNames(dir string, m *Manifest) error {
-	known := map[string]bool{manifestName: true, markerName: true}
+	known := map[string]bool{manifestName: true, lockName: true, planName: true, marks.Name: true}
 	for _, f := range m.Files {
 		known[f.Path] = true
 	}
 	return walk(dir, func(_, name string, folder bool) error {
-		if !folder && !known[name] {
+		if !folder && !known[name] && !isRecord(name) {
 			v.problem(name, "nobody sealed this file")
 		}
 		return nil

@@ -179,7 +179,10 @@ func TestVerifyFindsFiles(t *testing.T) {
 // the marker leaves a whole set.
 func TestVerifyAcceptsLeftMarker(t *testing.T) {
 	dir := sealed(t)
-	put(t, filepath.Join(dir, "unfinished.jsonl"), marker)
+	for name, text := range left(t, both()) {
+		put(t, filepath.Join(dir, name), text)
+	}
+	put(t, filepath.Join(dir, "unfinished", "bucket-00002.json"), "{}")
 	if got := verify(t, dir); len(got) > 0 {
 		t.Errorf("%q, want no problem", got)
 	}

@@ -18,7 +18,7 @@ func (o *Options) formats() []raw.Format {
 	return []raw.Format{
 		bids.Format{},
 		bvh.Format{LengthUnit: o.LengthUnit},
-		c3d.Format{Stream: o.Stream},
+		c3d.Format{Stream: o.Signals},
 		columnar.Format{},
 		jsonlines.Format{},
 		delimited.Format{},

@@ -44,9 +44,9 @@ type Options struct {
 	// in. Empty leaves it to the reader, which says what it takes.
 	LengthUnit string
 
-	// Stream is what of a C3D file is read: "points" or "analog". Empty is
+	// Signals is what of a C3D file is read: "points" or "analog". Empty is
 	// points.
-	Stream string
+	Signals string
 
 	// Repair says what may be repaired. The zero value repairs nothing.
 	Repair Repair

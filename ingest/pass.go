@@ -49,8 +49,17 @@ func (p *pass) run() error {
 }
 
 // source reads one file.
-func (p *pass) source(i int) error {
+func (p *pass) source(i int) (err error) {
 	p.check.open(p.r.sources[i].name)
+	leave, err := p.r.enter(i)
+	if err != nil {
+		return err
+	}
+	defer func() {
+		if left := leave(); err == nil {
+			err = left
+		}
+	}()
 	s, err := p.r.spooled(i)
 	if err != nil {
 		return err

@@ -18,6 +18,10 @@ type Recordings struct {
 	sources []source
 	found   notices // of resolving the paths
 
+	elsewhere Elsewhere // nil when the recordings are here
+	expected  []File    // by source, nil when any will do
+	reading   int       // source
+
 	mu      sync.Mutex
 	spools  []string
 	frame   *frame

@@ -25,7 +25,7 @@ func TestWrongUsageSaysWhatIsLegal(t *testing.T) {
 		{"no recordings", []string{"grow", "--out", set}, []string{"no recordings"}},
 		{"no out", []string{"grow", csv, "--rate", "50"}, []string{"--out"}},
 		{"no rate", []string{"grow", csv, "--out", set}, []string{"--rate", "long.csv"}},
-		{"method", grow("--method", "magic"), []string{"--method", "timed-path, path"}},
+		{"method", grow("--method", "magic"), []string{"--method", "recipe, path"}},
 		{"distance", grow("--distance", "taxi"), []string{"--distance", "dtw-independent"}},
 		{"normalise", grow("--normalise", "max"), []string{"--normalise", "none, z"}},
 		{"protocol", grow("--protocol", "best"), []string{"--protocol", "given, subject, session, pooled"}},

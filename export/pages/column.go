@@ -15,7 +15,11 @@ const (
 	Float64                 // 64-bit float
 	Float32                 // 32-bit float
 	Float32List             // list of 32-bit floats
+	Int16List               // list of 16-bit whole numbers, each filled in as four bytes
 )
+
+// list reports whether rows of the kind hold lists.
+func (k Kind) list() bool { return k == Float32List || k == Int16List }
 
 // Column describes one column of a file. Only a flat column may be optional:
 // a list without elements is an empty list.
@@ -54,7 +58,7 @@ type column struct {
 }
 
 func newColumn(c Column) *column {
-	width := map[Kind]int{Int32: 4, Float64: 8, Float32: 4, Float32List: 4}
+	width := map[Kind]int{Int32: 4, Float64: 8, Float32: 4, Float32List: 4, Int16List: 4}
 	return &column{Column: c, width: width[c.Kind]}
 }
 

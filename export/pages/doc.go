@@ -1,6 +1,6 @@
 // Package pages writes Parquet files column by column, laying the pages out
-// itself: flat columns and lists of 32-bit floats, whose bytes are copied and
-// compressed and nothing else.
+// itself: flat columns and lists of numbers, whose bytes are copied and compressed and
+// nothing else.
 //
 // # Why not row by row
 //
@@ -17,10 +17,12 @@
 //
 //   - Text is a dictionary and run-length encoded indexes into it.
 //   - Numbers are plain little-endian values.
+//   - 16-bit whole numbers, which the format does not know, are 32-bit ones
+//     annotated INT(16): readers give them back in 16 bits.
 //   - A list is the standard three-level LIST: a required group, a repeated
 //     group "list", a required "element". Its levels are two runs per row.
 //   - Pages are cut at about [PageBytes] at the end of a row and compressed
-//     with Snappy; each carries the CRC-32 of its bytes.
+//     with Snappy, Zstandard or not at all; each carries the CRC-32 of its bytes.
 //   - Text, whole-number and 64-bit columns state their smallest and largest
 //     value per row group, so that a reader can skip; 32-bit floats do not.
 //

@@ -17,7 +17,7 @@ func (k Kind) physical() format.Type {
 	switch k {
 	case Text:
 		return format.ByteArray
-	case Int32:
+	case Int32, Int16List: // the format knows no shorter numbers
 		return format.Int32
 	case Float64:
 		return format.Double
@@ -27,7 +27,7 @@ func (k Kind) physical() format.Type {
 
 // path returns the column's path in the schema.
 func (c *column) path() []string {
-	if c.Kind == Float32List {
+	if c.Kind.list() {
 		return []string{c.Name, "list", "element"}
 	}
 	return []string{c.Name}
@@ -40,7 +40,6 @@ func (c *column) metadata() format.ColumnMetaData {
 		Type:                  c.Kind.physical(),
 		Encoding:              []format.Encoding{format.Plain, format.RLE},
 		PathInSchema:          c.path(),
-		Codec:                 format.Snappy,
 		NumValues:             c.numValues,
 		TotalUncompressedSize: c.plainSize,
 		Statistics:            c.statistics(),
@@ -66,7 +65,11 @@ func (c *column) elements() []format.SchemaElement {
 		leaf.ConvertedType = thrift.New(deprecated.UTF8)
 		leaf.LogicalType.Value = &format.StringType{}
 	}
-	if c.Kind != Float32List {
+	if c.Kind == Int16List {
+		leaf.ConvertedType = thrift.New(deprecated.Int16)
+		leaf.LogicalType.Value = &format.IntType{BitWidth: 16, IsSigned: true}
+	}
+	if !c.Kind.list() {
 		return []format.SchemaElement{leaf}
 	}
 	leaf.Name = "element"

@@ -6,7 +6,6 @@ import (
 	"hash/crc32"
 	"math"
 
-	"github.com/golang/snappy"
 	"github.com/parquet-go/parquet-go/encoding/thrift"
 	"github.com/parquet-go/parquet-go/format"
 )
@@ -14,6 +13,7 @@ import (
 // press turns page bodies into finished pages. Its buffers are shared by all
 // columns of a writer.
 type press struct {
+	codec      codec
 	body       []byte // levels and values of the page
 	compressed []byte
 	header     bytes.Buffer
@@ -55,10 +55,10 @@ func (p *press) cut(c *column) error {
 // layOut returns the body of the column's page, valid until the next call.
 func (p *press) layOut(c *column) []byte {
 	body := p.body[:0]
-	if c.Kind == Float32List {
+	if c.Kind.list() {
 		body = c.repetitions.appendLevels(body)
 	}
-	if c.Kind == Float32List || c.Optional {
+	if c.Kind.list() || c.Optional {
 		body = c.definitions.appendLevels(body)
 	}
 	if c.Kind == Text {
@@ -94,8 +94,7 @@ func (p *press) append(dst []byte, page *format.PageHeader, body []byte) ([]byte
 	if len(body) > math.MaxInt32/2 {
 		return dst, fmt.Errorf("a page of %d bytes is more than the Parquet format holds", len(body))
 	}
-	// Encode looks at the length of its buffer, not at the capacity.
-	p.compressed = snappy.Encode(p.compressed[:cap(p.compressed)], body)
+	p.compressed = p.codec.compress(p.compressed[:0], body)
 	page.UncompressedPageSize = int32(len(body))
 	page.CompressedPageSize = int32(len(p.compressed))
 	page.CRC = int32(crc32.ChecksumIEEE(p.compressed))

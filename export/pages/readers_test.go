@@ -63,6 +63,15 @@ func goValue(kind pages.Kind, values []parquet.Value) any {
 		}
 		return list
 	}
+	if kind == pages.Int16List {
+		list := []int16{}
+		for _, v := range values {
+			if v.DefinitionLevel() == 1 {
+				list = append(list, int16(v.Int32()))
+			}
+		}
+		return list
+	}
 	v := values[0]
 	if v.IsNull() {
 		return nil
@@ -124,7 +133,12 @@ func arrowValues(chunk arrow.Array) []any {
 			out[i] = a.Value(i)
 		case *array.List:
 			from, to := a.ValueOffsets(i)
-			out[i] = append([]float32{}, a.ListValues().(*array.Float32).Float32Values()[from:to]...)
+			switch list := a.ListValues().(type) {
+			case *array.Float32:
+				out[i] = append([]float32{}, list.Float32Values()[from:to]...)
+			case *array.Int16:
+				out[i] = append([]int16{}, list.Int16Values()[from:to]...)
+			}
 		default:
 			panic(fmt.Sprintf("arrow made a %T", a))
 		}

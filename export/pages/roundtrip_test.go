@@ -18,9 +18,9 @@ func drawTable(t *rapid.T) *table {
 	tb := &table{}
 	rows := rapid.IntRange(1, 60).Draw(t, "rows")
 	for c := range rapid.IntRange(1, 7).Draw(t, "columns") {
-		kind := pages.Kind(rapid.IntRange(0, int(pages.Float32List)).Draw(t, "kind"))
+		kind := pages.Kind(rapid.IntRange(0, int(pages.Int16List)).Draw(t, "kind"))
 		column := pages.Column{Name: fmt.Sprintf("column.%d", c), Kind: kind}
-		column.Optional = kind != pages.Float32List && rapid.Bool().Draw(t, "optional")
+		column.Optional = kind < pages.Float32List && rapid.Bool().Draw(t, "optional")
 		values := make([]any, rows)
 		for i := range values {
 			if !column.Optional || rapid.IntRange(0, 3).Draw(t, "null") > 0 {
@@ -43,6 +43,8 @@ func drawValue(t *rapid.T, kind pages.Kind) any {
 		return rapid.Float64().Draw(t, "float64")
 	case pages.Float32:
 		return rapid.Float32().Draw(t, "float32")
+	case pages.Int16List:
+		return append([]int16{}, rapid.SliceOfN(rapid.Int16(), 0, 9).Draw(t, "list")...)
 	}
 	return append([]float32{}, rapid.SliceOfN(rapid.Float32(), 0, 9).Draw(t, "list")...)
 }
@@ -50,6 +52,7 @@ func drawValue(t *rapid.T, kind pages.Kind) any {
 func TestReadersAgree(t *testing.T) {
 	rapid.Check(t, func(rt *rapid.T) {
 		tb := drawTable(rt)
+		tb.by = rapid.SampledFrom(pages.Compressions()).Draw(rt, "compression")
 		ends := map[int]bool{}
 		for range rapid.IntRange(0, 3).Draw(rt, "groups") {
 			ends[rapid.IntRange(0, tb.rows()-1).Draw(rt, "end")] = true

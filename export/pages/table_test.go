@@ -14,10 +14,11 @@ import (
 
 // table is the plain form of a file that the tests write and compare with:
 // one slice of values per column, each a string, an int32, a float64, a
-// float32, a []float32 or nil.
+// float32, a []float32, an []int16 or nil.
 type table struct {
 	columns []pages.Column
 	values  [][]any
+	by      pages.Compression
 }
 
 func (tb *table) rows() int { return len(tb.values[0]) }
@@ -26,7 +27,7 @@ func (tb *table) rows() int { return len(tb.values[0]) }
 func (tb *table) encode(t testing.TB, ends map[int]bool) []byte {
 	t.Helper()
 	var out bytes.Buffer
-	w, err := pages.NewWriter(&out, tb.columns)
+	w, err := pages.NewCompressedWriter(&out, tb.columns, tb.by)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -64,6 +65,10 @@ func put(w *pages.Writer, c int, kind pages.Kind, value any) {
 		putFloats(w.Fixed(c, 1), v)
 	case []float32:
 		putFloats(w.List(c, len(v)), v...)
+	case []int16:
+		for dst := w.List(c, len(v)); len(v) > 0; dst, v = dst[4:], v[1:] {
+			binary.LittleEndian.PutUint32(dst, uint32(int32(v[0])))
+		}
 	default:
 		panic(fmt.Sprintf("no column of kind %d holds %T", kind, value))
 	}

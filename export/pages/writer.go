@@ -36,12 +36,22 @@ type Group struct {
 	Bytes  int64
 }
 
-// NewWriter begins a Parquet file of these columns on out. It does not close
-// out, nor buffer: each write is a column of a row group.
+// NewWriter begins a Parquet file of these columns on out, compressed with
+// Snappy. It does not close out, nor buffer: each write is a column of a row
+// group.
 func NewWriter(out io.Writer, columns []Column) (*Writer, error) {
+	return NewCompressedWriter(out, columns, Snappy)
+}
+
+// NewCompressedWriter is [NewWriter] with another compression.
+func NewCompressedWriter(out io.Writer, columns []Column, by Compression) (*Writer, error) {
 	w := &Writer{out: out}
+	var err error
+	if w.press.codec, err = newCodec(by); err != nil {
+		return nil, err
+	}
 	for _, c := range columns {
-		if c.Kind == Float32List && c.Optional {
+		if c.Kind.list() && c.Optional {
 			return nil, fmt.Errorf("column %s: a list cannot be optional", c.Name)
 		}
 		w.columns = append(w.columns, newColumn(c))
@@ -83,17 +93,21 @@ func (w *Writer) AppendFloat64(c int, v float64) {
 // call for that column. What they hold before is not defined.
 func (w *Writer) Fixed(c, n int) []byte {
 	col := w.columns[c]
-	if col.width == 0 || col.Kind == Float32List {
+	if col.width == 0 || col.Kind.list() {
 		panic("pages: not a flat numeric column")
 	}
 	col.present(n)
 	return col.extend(n)
 }
 
-// List adds one row holding a list of n floats to column c and returns their
-// bytes for the caller to fill, as [Writer.Fixed] does.
+// List adds one row holding a list of n numbers of four bytes to column c, of
+// either list kind, and returns their bytes for the caller to fill, as
+// [Writer.Fixed] does.
 func (w *Writer) List(c, n int) []byte {
-	col := w.column(c, Float32List)
+	col := w.columns[c]
+	if !col.Kind.list() {
+		panic("pages: not a column of lists")
+	}
 	col.list(n)
 	return col.extend(n)
 }
@@ -157,6 +171,7 @@ func (w *Writer) writeColumn(c *column) format.ColumnMetaData {
 	}
 	from := w.offset
 	meta := c.metadata()
+	meta.Codec = w.press.codec.format
 	if c.Kind == Text && w.err == nil {
 		var size int64
 		w.scratch, size, w.err = w.press.appendDictionary(w.scratch[:0], c)

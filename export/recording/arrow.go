@@ -10,6 +10,7 @@ import (
 
 	"strandwise/channels"
 	"strandwise/export"
+	"strandwise/export/pages"
 )
 
 // batchBytes is the size of floats after which a record batch ends: large enough
@@ -58,15 +59,35 @@ func NewArrowFile(out io.Writer, c *Contents, version string) (*Arrow, error) {
 	return w, err
 }
 
+// NewGrownStream begins an Arrow IPC stream of takes of which most are only made
+// while it is written. Contents has noted the recorded ones among them. The rows
+// end in a column split, and the metadata are those of a set with these options;
+// see [export.TakeFacts.StreamMetadata].
+func NewGrownStream(out io.Writer, c *Contents, o export.Options) (*Arrow, error) {
+	metadata, err := c.facts.StreamMetadata(c.Layout, o)
+	if err != nil {
+		return nil, err
+	}
+	grown := *c
+	grown.Splits = true
+	w := newArrowOf(out, &grown, metadata)
+	w.ipc = ipc.NewWriter(w.out, ipc.WithSchema(w.schema))
+	return w, nil
+}
+
 func newArrow(out io.Writer, c *Contents, version string) (*Arrow, error) {
 	metadata, err := c.facts.Metadata(c.Layout, version)
 	if err != nil {
 		return nil, err
 	}
+	return newArrowOf(out, c, metadata), nil
+}
+
+func newArrowOf(out io.Writer, c *Contents, metadata []pages.KeyValue) *Arrow {
 	rows := export.NewTakeRows(c.Layout, c.Splits)
 	w := &Arrow{out: bufio.NewWriterSize(out, 64<<10), rows: rows, contents: c}
 	w.batch, w.schema = newBatch(rows.Columns(), metadata)
-	return w, nil
+	return w
 }
 
 // Add writes a take as the next row.
@@ -89,7 +110,10 @@ func (w *Arrow) flush() error {
 	w.floats = 0
 	record := w.batch.record(w.schema)
 	defer record.Release()
-	return w.ipc.Write(record)
+	if err := w.ipc.Write(record); err != nil {
+		return err
+	}
+	return w.out.Flush() // whoever reads a pipe can begin on the batch
 }
 
 // Close writes the last batch and the end of the stream or the file.

@@ -29,7 +29,8 @@
 // whose values or whose clock those cannot hold is refused.
 //
 // Arrow IPC has two forms, a stream and a file around it that can be read from
-// any place; see [NewArrowStream] and [NewArrowFile].
+// any place; see [NewArrowStream] and [NewArrowFile]. [NewGrownStream] is for takes
+// that are made while they are written.
 //
 // # How to write
 //
