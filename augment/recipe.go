@@ -171,32 +171,45 @@ func (s *recipeSource) resize(y []float64, draw int) {
 		if part.Follows >= 0 {
 			gains[k] = gains[part.Follows]
 		} else {
-			gains[k] = s.drawGain(part, s.extents[k], draw)
+			gains[k] = s.drawGain(part, s.extents[k], partSize(y, s.chart.Width(), part), draw)
 		}
 		gains[k].apply(y, s.chart.Width(), part)
 	}
 }
 
-// gain is how a part changes: factor and, for free coordinates, what is added,
-// in sizes of the part, both for every coordinate and frame.
+// gain is how a part changes: a factor, and what is added, both for every
+// coordinate and frame.
 type gain struct{ factor, added [][]float64 }
 
-func (s *recipeSource) drawGain(part chart.Part, v extent, draw int) gain {
+// drawGain draws how a part of this size changes. Nothing is added to rates and
+// accelerations: a hand that rests has none. A rate changes by one factor
+// throughout: what has turned comes back to where it was.
+func (s *recipeSource) drawGain(part chart.Part, v extent, size float64, draw int) gain {
 	n := s.take.Frames()
 	rng := s.generator(draw, part.Name)
 	constant, common := v.amplitude*rng.NormFloat64(), centred(s.sizes.Draw(make([]float64, n), rng))
 	var g gain
+	if !aboutMean(part) {
+		v.offset, v.shape = 0, 0
+	}
+	if part.Kind == chart.Rate {
+		v.gain, v.single = 0, 0
+	}
 	for range part.Coordinates {
 		factor, added := s.sizes.Draw(make([]float64, n), rng), centred(s.drifts[v.shapeLength].Draw(make([]float64, n), rng))
 		moved := v.offset * rng.NormFloat64()
 		for i := range factor {
 			factor[i] = math.Exp(constant+v.gain*common[i]) * (1 + v.single*factor[i])
-			added[i] = moved + v.shape*added[i]
+			added[i] = size * (moved + v.shape*added[i])
 		}
 		g.factor, g.added = append(g.factor, factor), append(g.added, added)
 	}
 	return g
 }
+
+// aboutMean tells whether a part is scaled about its mean over the take, as
+// places are, and not about zero, as rates and accelerations are.
+func aboutMean(part chart.Part) bool { return part.Kind == chart.Free || part.Kind == chart.Turn }
 
 // centred takes the mean off a curve, which is drawn by itself.
 func centred(curve []float64) []float64 {
@@ -205,22 +218,16 @@ func centred(curve []float64) []float64 {
 	return curve
 }
 
-// apply changes a part's coordinates: free ones about their mean, rates and
-// accelerations about zero.
+// apply changes a part's coordinates.
 func (g gain) apply(y []float64, w int, part chart.Part) {
-	free := part.Kind == chart.Free || part.Kind == chart.Turn
-	size := partSize(y, w, part)
 	for k, x := range part.Coordinates {
 		mean := 0.0
-		if free {
+		if aboutMean(part) {
 			mean = column(y, w, x)
 		}
 		for i, factor := range g.factor[k] {
 			at := &y[i*w+x]
-			*at = mean + (*at-mean)*factor
-			if free {
-				*at += size * g.added[k][i]
-			}
+			*at = mean + (*at-mean)*factor + g.added[k][i]
 		}
 	}
 }
