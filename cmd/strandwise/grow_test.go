@@ -20,7 +20,7 @@ func TestGrowSealsASetThatVerifies(t *testing.T) {
 	want := []string{
 		"CARD.md", "croissant.json",
 		"frames/split=test/part-00000.parquet", "frames/split=train/part-00000.parquet",
-		"harm.json", "manifest.json", "realism.json", "score.json",
+		"harm.json", "manifest.json", "realism.json", "report.html", "score.json",
 		"takes/split=test/part-00000.parquet", "takes/split=train/part-00000.parquet", "variation.json",
 	}
 	if diff := cmp.Diff(want, files); diff != "" {

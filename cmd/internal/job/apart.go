@@ -39,8 +39,12 @@ type Apart struct {
 	say      func(string)
 }
 
-// Apart surveys the plan's recordings, to make a set of at most so many shards,
-// or as many as it has buckets when shards is 0. Each recorded take is referred
+// mostShards is the number of shards when none is stated: enough to keep a
+// cluster busy. Each shard looks once at what is finished of the whole set.
+const mostShards = 1024
+
+// Apart surveys the plan's recordings, to make a set of at most so many shards;
+// 0 makes one of each bucket, up to 1024. Each recorded take is referred
 // to. recordings is nil when they are files of this machine.
 func (p *Plan) Apart(ctx context.Context, shards int, version string, recordings Remote, progress Progress, notice func(string), refer func(Reference) error) (*Apart, error) {
 	if slices.Contains(p.Recordings, "-") {
@@ -109,9 +113,10 @@ func (a *Apart) look(ctx context.Context, shards int, refer func(Reference) erro
 	if g.plan.HoldOut != "" {
 		a.held = held
 	}
-	if shards == 0 || shards > a.options.Buckets {
-		shards = a.options.Buckets
+	if shards == 0 {
+		shards = mostShards
 	}
+	shards = min(shards, a.options.Buckets)
 	g.plan.shard = &Shard{Index: 0, Of: shards}
 	a.options.Shards = shards
 	return nil

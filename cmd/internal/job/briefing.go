@@ -15,6 +15,7 @@ import (
 	"strandwise/channels/body"
 	"strandwise/cmd/internal/spill"
 	"strandwise/export"
+	"strandwise/export/marks"
 	"strandwise/ingest"
 )
 
@@ -52,14 +53,12 @@ func (a *Apart) Briefing() (*Briefing, error) {
 		Plan: *a.g.plan, Given: a.g.plan.given, Beside: map[string][]byte{}, Version: a.g.version, Options: a.options,
 		Held: a.held, Layout: *a.found.layout, Scales: a.found.scales,
 	}
-	for _, f := range a.g.recordings.Files() {
-		b.Files = append(b.Files, f)
-	}
-	for key, path := range b.named() {
-		if *path == "" {
+	b.Files = append(b.Files, a.g.recordings.Files()...)
+	for key, n := range b.Plan.named() {
+		if *n.path == "" {
 			continue
 		}
-		text, err := os.ReadFile(*path)
+		text, err := os.ReadFile(filepath.Join(*n.path, n.file))
 		if err != nil {
 			return nil, err
 		}
@@ -83,10 +82,39 @@ func (a *Apart) Briefing() (*Briefing, error) {
 	return b, nil
 }
 
-// named returns the paths of the files that the plan names, the recordings
-// apart, by key.
-func (b *Briefing) named() map[string]*string {
-	return map[string]*string{"annotations": &b.Plan.Annotations, "variation": &b.Plan.Variation, "subject_salt": &b.Plan.SubjectSalt}
+// named is a file that a plan names: a path, or this file in a folder of that
+// path.
+type named struct {
+	path *string
+	file string
+}
+
+// named returns the files that the plan names, the recordings apart, by key.
+func (p *Plan) named() map[string]named {
+	return map[string]named{
+		"annotations": {&p.Annotations, ""}, "variation": {&p.Variation, ""}, "subject_salt": {&p.SubjectSalt, ""},
+		"marks": {&p.Marks, marks.Name},
+	}
+}
+
+// besideIn writes the files that the plan names into a folder, and has the plan
+// name them there.
+func (b *Briefing) besideIn(dir string, p *Plan) error {
+	for key, n := range p.named() {
+		text, there := b.Beside[key]
+		if !there {
+			continue
+		}
+		*n.path = filepath.Join(dir, key)
+		at := filepath.Join(*n.path, n.file)
+		if err := os.MkdirAll(filepath.Dir(at), 0o700); err != nil {
+			return err
+		}
+		if err := os.WriteFile(at, text, 0o600); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // training returns the sample as it was.
@@ -120,19 +148,10 @@ type Maker struct {
 func (b *Briefing) Maker(ctx context.Context, scratch string, recordings Remote) (*Maker, error) {
 	p := b.Plan
 	p.given, p.flags, p.shard = b.Given, b.Given, nil
-	for key, path := range b.named() {
-		text, there := b.Beside[key]
-		if !there {
-			continue
-		}
-		at := filepath.Join(scratch, key)
-		if err := os.WriteFile(at, text, 0o600); err != nil {
-			return nil, err
-		}
-		*path = at
+	if err := b.besideIn(scratch, &p); err != nil {
+		return nil, err
 	}
-	p.Annotations, p.Variation, p.SubjectSalt = b.Plan.Annotations, b.Plan.Variation, b.Plan.SubjectSalt
-	p.Out = scratch + "/none" // sets are made where Make says
+	p.Out = filepath.Join(scratch, "none") // sets are made where Make says
 	g, err := p.prepareAt(recordings, b.Version, silent{})
 	if err != nil {
 		return nil, err
@@ -141,7 +160,7 @@ func (b *Briefing) Maker(ctx context.Context, scratch string, recordings Remote)
 	if err := g.recordings.Expect(b.Files); err != nil {
 		return nil, errors.Join(err, m.Close())
 	}
-	known, err := g.making.learn(ctx, b.training(), &b.Scales, thorough)
+	known, err := g.making.learn(ctx, b.training(), &b.Scales, ready)
 	if err == nil {
 		m.maker, err = augment.NewMaker(g.making.variation, known, p.Seed)
 	}
@@ -150,6 +169,9 @@ func (b *Briefing) Maker(ctx context.Context, scratch string, recordings Remote)
 	}
 	return m, nil
 }
+
+// Shards returns the number of shards of the set.
+func (m *Maker) Shards() int { return m.options.Shards }
 
 // Close lets go of the recordings.
 func (m *Maker) Close() error { return m.g.recordings.Close() }
