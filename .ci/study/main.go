@@ -24,6 +24,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -160,7 +161,14 @@ func parseWay(text string) (way, error) {
 		case "timing":
 			w.variation.Timing = augment.Timing(value)
 		default:
-			w.variation.Sizes[variation.Part(strings.ReplaceAll(key, "-", " "))] = x
+			part := variation.Part(strings.ReplaceAll(key, "-", " "))
+			if key == "timing-spread" {
+				part = variation.Timing
+			}
+			if !slices.Contains(variation.Parts(), part) {
+				return w, fmt.Errorf("%s: unknown change %q", text, key)
+			}
+			w.variation.Sizes[part] = x
 		}
 	}
 	return w, w.variation.Validate()
