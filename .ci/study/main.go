@@ -89,6 +89,9 @@ func load(dir, set string) ([]*channels.Take, error) {
 				}
 				if t.Label == "rain-patter" || t.Label == "light-lantern" || t.Label == "snuff-lantern" {
 					t.ID, t.Subject = fmt.Sprint(seed, t.ID), fmt.Sprint(seed, t.Subject)
+					if len(out) > 0 {
+						t.Layout = out[0].Layout
+					}
 					out = append(out, t)
 				}
 			}
@@ -241,9 +244,17 @@ func (s *study) run(set string, takes []*channels.Take) error {
 			saved = 100 * float64(*r.Reduction)
 			s.saved[[2]string{r.Method, learner}] = append(s.saved[[2]string{r.Method, learner}], saved)
 		}
-		fmt.Printf("%-20s k=%d %-20s %-30s error %.3f, saved %.1f %%, %s\n", set, *r.TakesPerLabel, learner, r.Method, float64(r.Error), saved, r.Finding)
+		fmt.Printf("%-20s k=%d %-20s %-30s error %.3f, saved %.1f %%%s, %s\n", set, *r.TakesPerLabel, learner, r.Method, float64(r.Error), saved, interval(r), r.Finding)
 	}
 	return nil
+}
+
+// interval is the 95 % interval of what was saved.
+func interval(r classify.Result) string {
+	if r.ReductionLow == nil || r.ReductionHigh == nil {
+		return ""
+	}
+	return fmt.Sprintf(" (%.1f to %.1f)", 100*float64(*r.ReductionLow), 100*float64(*r.ReductionHigh))
 }
 
 // raw is a learner under another name.
