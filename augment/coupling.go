@@ -24,10 +24,10 @@ type coupling struct {
 	rho      float64
 }
 
-// untold is the coupling of limbs of which there are too few takes to tell: it
-// did as well as full coupling on hands that move together and nearly as well as
-// none on hands that do not. DEVELOPERS.md has the figures. The limbs of a
-// skeleton are one body and are taken as fully coupled.
+// untold is the coupling of limbs of which there are too few takes to tell:
+// halfway between limbs that share one timing and limbs that keep their own,
+// neither of which did better on all sets. The limbs of a skeleton are one body
+// and are taken as fully coupled.
 const untold = 0.5
 
 func (m *Maker) coupling(t *channels.Take, limbs []string) (*coupling, error) {
