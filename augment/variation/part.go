@@ -101,8 +101,10 @@ func (p Part) Default() float64 {
 // Those of timing, trim and orientation are the recipe's rules, found by
 // experiment on open recordings: timing and orientation are kept within bounds
 // outside of which takes were of no use, orientation is halved and trim
-// lengthened, all from the plain number. The others are kept within about
-// twice the recipe's sizes, since nothing shows that more serves.
+// lengthened, all from the plain number. An offset is used as measured up to half
+// a group's size: where takes differ by it, as hands seen by a camera do, nothing
+// else in the recipe stands for it. The others are kept within about twice the
+// recipe's sizes, since nothing shows that more serves.
 func (p Part) serving(raw, measured float64) float64 {
 	switch p {
 	case Timing:
@@ -119,7 +121,9 @@ func (p Part) serving(raw, measured float64) float64 {
 		return min(measured, 0.4)
 	case Duration, Amplitude:
 		return min(measured, 0.3)
-	case Offset, Shape:
+	case Offset:
+		return min(measured, 0.5)
+	case Shape:
 		return min(measured, 0.2)
 	}
 	return measured
