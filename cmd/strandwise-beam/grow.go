@@ -156,7 +156,7 @@ func (l *launch) survey(ctx context.Context) (shut func() error, err error) {
 		return l.putReferences(ctx)
 	}
 	notice := func(text string) { fmt.Fprintf(l.streams.Err, "note: %s\n", text) }
-	l.apart, err = l.plan.Apart(ctx, l.options.shards, version(), remote, &stages{w: l.streams.Err}, notice, refer)
+	l.apart, err = l.plan.Apart(ctx, l.options.shards, job.Version(), remote, &stages{w: l.streams.Err}, notice, refer)
 	if err == nil {
 		err = l.putReferences(ctx)
 	}

@@ -97,7 +97,7 @@ func alone(t *testing.T, args ...string) {
 	if err := plan.Load(file, f, f.Args()); err != nil {
 		t.Fatal(err)
 	}
-	if _, err := plan.Grow(context.Background(), nil, version(), &stages{w: new(bytes.Buffer)}, func(string) {}); err != nil {
+	if _, err := plan.Grow(context.Background(), nil, job.Version(), &stages{w: new(bytes.Buffer)}, func(string) {}); err != nil {
 		t.Fatal(err)
 	}
 }

@@ -8,7 +8,6 @@ import (
 	"fmt"
 	"io"
 	"os"
-	"runtime/debug"
 
 	"github.com/apache/beam/sdks/v2/go/pkg/beam"
 	"github.com/spf13/cobra"
@@ -59,7 +58,7 @@ fault, named on standard error; 2 wrong usage.`,
 		Example: `  strandwise-beam --plan plan.toml --out /shared/set --buckets 64
   strandwise-beam --plan plan.toml --out s3://lab/sets/theatre s3://lab/recordings \
     --runner universal --endpoint jobs.cluster:8099 --environment_type LOOPBACK`,
-		Version:       version(),
+		Version:       job.Version(),
 		SilenceErrors: true,
 		SilenceUsage:  true,
 		RunE: func(c *cobra.Command, args []string) error {
@@ -167,13 +166,4 @@ func printJSON(w io.Writer, v any) error {
 	e.SetEscapeHTML(false)
 	e.SetIndent("", "  ")
 	return e.Encode(v)
-}
-
-// version returns the version the binary was built as. It stands in the set, so
-// it is found as strandwise finds its own.
-func version() string {
-	if info, ok := debug.ReadBuildInfo(); ok && info.Main.Version != "" && info.Main.Version != "(devel)" {
-		return info.Main.Version
-	}
-	return "0.1.0"
 }

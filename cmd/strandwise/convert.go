@@ -11,7 +11,7 @@ import (
 
 func newConvert(s Streams) *cobra.Command {
 	plan, file, asJSON := job.NewPlan(), "", false
-	to := job.Conversion{Version: version()}
+	to := job.Conversion{Version: job.Version()}
 	c := &cobra.Command{
 		Use:   "convert [RECORDING …] OUT",
 		Short: "Write recordings in another format",

@@ -81,7 +81,7 @@ func grow(c *cobra.Command, s Streams, plan *job.Plan, asJSON bool) error {
 	if plan.Out == "-" {
 		return growStream(c, s, plan, asJSON)
 	}
-	done, err := plan.Grow(c.Context(), s.In, version(), newBar(s), noticeTo(s.Err))
+	done, err := plan.Grow(c.Context(), s.In, job.Version(), newBar(s), noticeTo(s.Err))
 	if err != nil {
 		return err
 	}
@@ -101,7 +101,7 @@ func growStream(c *cobra.Command, s Streams, plan *job.Plan, asJSON bool) error 
 	signal.Ignore(syscall.SIGPIPE)
 	defer signal.Reset(syscall.SIGPIPE)
 	say := noticeTo(s.Err)
-	done, err := plan.GrowStream(c.Context(), s.In, s.Out, version(), newBar(s), say)
+	done, err := plan.GrowStream(c.Context(), s.In, s.Out, job.Version(), newBar(s), say)
 	if err == nil && done.Stopped {
 		say(fmt.Sprintf("the reader went away after %d takes", done.Takes))
 	}

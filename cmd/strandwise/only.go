@@ -26,14 +26,14 @@ type onlyTake struct {
 // growOnly makes one synthetic take again and writes it as a recording: to
 // standard output as CSV, unless a file is named on the command line.
 func growOnly(c *cobra.Command, s Streams, plan *job.Plan, id string, asJSON bool) error {
-	t, err := plan.Only(c.Context(), s.In, id, version(), newBar(s), noticeTo(s.Err))
+	t, err := plan.Only(c.Context(), s.In, id, job.Version(), newBar(s), noticeTo(s.Err))
 	if err != nil {
 		return err
 	}
 	if asJSON {
 		return printJSON(s.Out, described(t))
 	}
-	o := job.Conversion{Out: "-", As: "csv", Version: version()}
+	o := job.Conversion{Out: "-", As: "csv", Version: job.Version()}
 	if c.Flags().Changed("out") && plan.Out != "-" {
 		o.Out, o.As = plan.Out, ""
 	}

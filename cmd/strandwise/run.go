@@ -6,7 +6,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"runtime/debug"
 
 	"github.com/spf13/cobra"
 
@@ -40,7 +39,7 @@ func Run(ctx context.Context, s Streams, args []string) error {
 		Use:           "strandwise",
 		Short:         "Grow gesture recordings into training sets",
 		Long:          about,
-		Version:       version(),
+		Version:       job.Version(),
 		SilenceErrors: true,
 		SilenceUsage:  true,
 		Args:          cobra.NoArgs,
@@ -111,12 +110,4 @@ func printJSON(w io.Writer, v any) error {
 	e.SetEscapeHTML(false)
 	e.SetIndent("", "  ")
 	return e.Encode(v)
-}
-
-// version returns the version the binary was built as.
-func version() string {
-	if info, ok := debug.ReadBuildInfo(); ok && info.Main.Version != "" && info.Main.Version != "(devel)" {
-		return info.Main.Version
-	}
-	return "0.1.0"
 }

@@ -110,13 +110,12 @@ func (p *Plan) units() ([]ingest.UnitRule, error) {
 // NAME@LIMB=CHANNELS.
 func (p *Plan) groups() ([]group.Rule, error) {
 	var out []group.Rule
-	for _, rule := range p.Group {
-		name, patterns, ok := strings.Cut(rule, "=")
-		name, limb, _ := strings.Cut(strings.TrimSpace(name), "@")
-		if !ok || name == "" || strings.TrimSpace(patterns) == "" {
-			return nil, p.fault("group", "%q is not NAME=CHANNELS or NAME@LIMB=CHANNELS, such as left=c0-c2,c6-c8", rule)
+	for _, text := range p.Group {
+		rule, err := group.ParseRule(text)
+		if err != nil {
+			return nil, p.fault("group", "%v", err)
 		}
-		out = append(out, group.Rule{Name: name, Limb: limb, Channels: strings.Split(patterns, ",")})
+		out = append(out, rule)
 	}
 	return out, nil
 }
