@@ -15,7 +15,7 @@ import (
 // Propose proposes channel groups and limbs for the plan's recordings, from
 // those that train. Merge is the ρ from which limbs are one; 0 is the default.
 func (p *Plan) Propose(ctx context.Context, in io.Reader, merge float64, progress Progress, notice func(string)) (*group.Proposal, error) {
-	s, err := p.trainingSurvey(ctx, in, progress, notice)
+	s, err := p.survey(ctx, in, mostScoredGrown, progress, notice)
 	if err != nil {
 		return nil, err
 	}

@@ -14,7 +14,7 @@ func (p *Plan) Measure(ctx context.Context, in io.Reader, progress Progress, not
 	if err != nil {
 		return nil, err
 	}
-	s, err := p.trainingSurvey(ctx, in, progress, notice)
+	s, err := p.survey(ctx, in, mostScoredGrown, progress, notice)
 	if err != nil {
 		return nil, err
 	}
@@ -26,29 +26,6 @@ func (p *Plan) Measure(ctx context.Context, in io.Reader, progress Progress, not
 	}
 	addCoupling(known.Measured, known.Coupling)
 	return known.Measured, nil
-}
-
-// trainingSurvey reads the plan's recordings once.
-func (p *Plan) trainingSurvey(ctx context.Context, in io.Reader, progress Progress, notice func(string)) (*survey, error) {
-	r, err := p.open(in, strict)
-	if err != nil {
-		return nil, err
-	}
-	defer r.Close()
-	held, err := p.holdOut(r.Takes())
-	if err != nil {
-		return nil, p.asUsage(err)
-	}
-	progress.Begin("reading", -1, "takes")
-	defer progress.End()
-	s, err := look(ctx, counted(held.apply(r.Takes()), progress), mostScoredGrown, p.Seed, p.NoGesture)
-	if err != nil {
-		return nil, p.asUsage(err)
-	}
-	for _, n := range r.Notices() {
-		notice(n)
-	}
-	return s, nil
 }
 
 // addCoupling keeps the coupling of limbs with the measured variation.

@@ -30,22 +30,9 @@ func (p *Plan) Score(ctx context.Context, in io.Reader, progress Progress, notic
 	if err != nil {
 		return nil, err
 	}
-	r, err := p.open(in, strict)
+	s, err := p.survey(ctx, in, mostScored, progress, notice)
 	if err != nil {
 		return nil, err
-	}
-	defer r.Close()
-	held, err := p.holdOut(r.Takes())
-	if err != nil {
-		return nil, p.asUsage(err)
-	}
-	progress.Begin("reading", -1, "takes")
-	s, err := look(ctx, counted(held.apply(r.Takes()), progress), mostScored, p.Seed, p.NoGesture)
-	if err != nil {
-		return nil, p.asUsage(err)
-	}
-	for _, n := range r.Notices() {
-		notice(n)
 	}
 	return score(ctx, s, p.methods(making), o, progress)
 }

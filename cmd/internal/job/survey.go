@@ -2,6 +2,7 @@ package job
 
 import (
 	"context"
+	"io"
 	"slices"
 
 	"strandwise/channels"
@@ -57,6 +58,30 @@ func look(ctx context.Context, takes channels.Stream, most int, seed uint64, noG
 	}
 	if s.takes == 0 {
 		return nil, &UsageError{Problem: "the recordings hold no takes"}
+	}
+	return s, nil
+}
+
+// survey reads the plan's recordings once and holds at most so many takes of
+// each label and split.
+func (p *Plan) survey(ctx context.Context, in io.Reader, most int, progress Progress, notice func(string)) (*survey, error) {
+	r, err := p.open(in, strict)
+	if err != nil {
+		return nil, err
+	}
+	defer r.Close()
+	held, err := p.holdOut(r.Takes())
+	if err != nil {
+		return nil, p.asUsage(err)
+	}
+	progress.Begin("reading", -1, "takes")
+	defer progress.End()
+	s, err := look(ctx, counted(held.apply(r.Takes()), progress), most, p.Seed, p.NoGesture)
+	if err != nil {
+		return nil, p.asUsage(err)
+	}
+	for _, n := range r.Notices() {
+		notice(n)
 	}
 	return s, nil
 }
